@@ -114,7 +114,7 @@ func writeVectors(t *testing.T) {
 	}, func(e *Event) { n := int64(1500); e.ClockErrorMs = &n; e.DeviceAt = s.at(192) })
 	s.say("a", 10, KindNote, Note{Text: "wind \u201csouth-west\u201d, 6 \u00b0C <b>\t\"\\ \U0001F6DF"}, func(e *Event) { e.Drill = true })
 	s.say("a", 11, KindPerson, Person{Light: nav.Some(true), LifeJacket: nav.Some("worn")}, func(e *Event) { e.Test = true })
-	s.say("a", 12, "kind_of_a_later_year", map[string]any{"b": []any{1e21, -0.0, 1e-7, nil, true}, "a": map[string]any{"é": 1, "z": 2}})
+	s.say("a", 12, "kind_of_a_later_year", map[string]any{"b": []any{1e21, 0, 1e-7, nil, true}, "a": map[string]any{"é": 1, "z": 2}})
 	text, err := json.MarshalIndent(s.all, "", "  ")
 	if err != nil {
 		t.Fatal(err)
