@@ -3,6 +3,8 @@ package nav
 import (
 	"errors"
 	"strconv"
+	"strings"
+	"unicode"
 	"unicode/utf8"
 )
 
@@ -58,5 +60,20 @@ func clip(s string, limit int) string {
 }
 
 func parseError(kind error, input, part, problem, expected string) *ParseError {
-	return &ParseError{Kind: kind, Input: clip(input, maxQuoted), Part: part, Problem: problem, Expected: expected}
+	return &ParseError{
+		Kind:     kind,
+		Input:    clip(input, maxQuoted),
+		Part:     part,
+		Problem:  strings.Map(printable, problem), // it may repeat a piece of the input
+		Expected: expected,
+	}
+}
+
+// printable puts the replacement character in the place of what a screen
+// cannot show, broken UTF-8 included.
+func printable(r rune) rune {
+	if unicode.IsPrint(r) {
+		return r
+	}
+	return utf8.RuneError
 }

@@ -168,6 +168,7 @@ var badPositions = []struct {
 	{"other digits", "٥٤,٧", "does not belong"},
 	{"control character", "54\x00,7", "does not belong"},
 	{"broken UTF-8", "54\xff,7", "does not belong"},
+	{"broken UTF-8 behind a point", "0.\xb5", "decimal point"}, // the message repeated the broken byte
 	{"too many digits", strings.Repeat("1", 50) + ",7", "too many digits"},
 	{"10 kB of letters", strings.Repeat("N", 10_000), "too long"},
 	{"10 kB of figures", strings.Repeat("9", 10_000), "too long"},
