@@ -62,5 +62,3 @@ func (m MagneticDeg) True(v VariationDeg) TrueDeg { return True(float64(m) + flo
 
 // RelativeTo returns the direction as seen from a bow pointing to heading.
 func (t TrueDeg) RelativeTo(heading TrueDeg) RelativeDeg { return RelativeDeg(t.Minus(heading)) }
-
-func sinCosDeg(deg float64) (sin, cos float64) { return math.Sincos(deg * (math.Pi / 180)) }
