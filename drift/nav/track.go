@@ -97,6 +97,15 @@ func (t Track) LastBefore(at time.Time) Opt[Fix] {
 	return Some(t.fixes[i-1])
 }
 
+// FirstAfter is the oldest fix later than at.
+func (t Track) FirstAfter(at time.Time) Opt[Fix] {
+	i := t.after(at)
+	if i == len(t.fixes) {
+		return None[Fix]()
+	}
+	return Some(t.fixes[i])
+}
+
 // At interpolates between the two fixes around at, along the straight line
 // between them. It is absent before the first fix, after the last, and across
 // a gap longer than maxGap.
