@@ -1,0 +1,121 @@
+package main
+
+import (
+	"encoding/json"
+	"fmt"
+	"os"
+	"strings"
+	"testing"
+	"time"
+
+	"wakeback/search/advice"
+	"wakeback/search/incident"
+)
+
+var t0 = time.Date(2026, 6, 1, 2, 14, 7, 0, time.UTC)
+
+// ask makes a call and reads what is under "ok".
+func ask[T any](t *testing.T, s *session, name, in string) T {
+	t.Helper()
+	out := s.call(name, in)
+	var a struct {
+		OK    T        `json:"ok"`
+		Error *problem `json:"error"`
+	}
+	if err := json.Unmarshal([]byte(out), &a); err != nil {
+		t.Fatalf("%s answers %s: %v", name, out, err)
+	}
+	if a.Error != nil {
+		t.Fatalf("%s(%s): %+v", name, in, *a.Error)
+	}
+	return a.OK
+}
+
+func refused(t *testing.T, s *session, name, in string) problem {
+	t.Helper()
+	var a struct{ Error *problem }
+	out := s.call(name, in)
+	if err := json.Unmarshal([]byte(out), &a); err != nil || a.Error == nil {
+		t.Fatalf("%s(%s) = %s, want an error", name, in, out)
+	}
+	return *a.Error
+}
+
+func markEvent(t *testing.T) string {
+	t.Helper()
+	e, err := incident.New(incident.Event{
+		ID: "018f3c2e-0000-7000-8000-000000000001", Incident: "018f3c2e-7b1a-7c3d-9e4f-000000000001",
+		Device: "de000000-0000-4000-8000-000000000001", DeviceSeq: 1, At: t0, DeviceAt: t0,
+	}, incident.KindMarked, json.RawMessage(`{"source":"phone","position":{"lat":54.1,"lon":7.9},"sog_kn":8,"cog_deg":0}`))
+	if err != nil {
+		t.Fatal(err)
+	}
+	text, _ := json.Marshal(map[string]any{"events": []incident.Event{e}})
+	return string(text)
+}
+
+// A phone that is alone: it marks, gets a frame from its own position, and
+// moves the mark back along its own track.
+func TestAPhoneAlone(t *testing.T) {
+	s := newSession()
+	for i := range 60 {
+		ask[any](t, s, "own", fmt.Sprintf(`{"source":"phone","fix":{"at":%q,"position":{"lat":%f,"lon":7.9},"sog_kn":8,"cog_deg":0}}`,
+			t0.Add(time.Duration(i-59)*time.Second).Format(time.RFC3339), 54.1+float64(i-59)*4.1155/111_000))
+	}
+	added := ask[map[string]int](t, s, "add_events", markEvent(t))
+	if added["added"] != 1 {
+		t.Fatalf("added %v", added)
+	}
+	again := ask[map[string]int](t, s, "add_events", markEvent(t))
+	if again["added"] != 0 {
+		t.Errorf("the same event again: %v", again)
+	}
+	f := ask[*advice.Frame](t, s, "steer", fmt.Sprintf(`{"now":%q}`, t0.Add(2*time.Second).Format(time.RFC3339)))
+	if f == nil || !f.Datum.IsSet() || !f.RangeM.IsSet() {
+		t.Fatalf("frame = %+v", f)
+	}
+	b := ask[placeOut](t, s, "back", `{"mark":"018f3c2e-0000-7000-8000-000000000001","back_s":25}`)
+	if b.Source != incident.FromTrack || !b.FellAt.Equal(t0.Add(-25*time.Second)) || b.Position.LatDeg() > 54.0995 {
+		t.Errorf("back = %+v", b)
+	}
+}
+
+func TestNothingOpenIsNull(t *testing.T) {
+	s := newSession()
+	if out := s.call("steer", `{"now":"2026-06-01T02:14:07Z"}`); out != `{"ok":null}` {
+		t.Errorf("steer = %s", out)
+	}
+}
+
+func TestRefusalsNameTheField(t *testing.T) {
+	s := newSession()
+	tests := []struct{ call, in, field, says string }{
+		{"steer", `{}`, "now", "RFC 3339"},
+		{"own", `{"source":"star"}`, "source", "phone"},
+		{"own", `{"source":"phone","fix":{"at":"2026-06-01T02:14:07Z","position":{"lat":91,"lon":0}}}`, "position", "-90 to 90"},
+		{"back", `{"mark":"x"}`, "mark", "id of a mark"},
+		{"parse_position", `{"text":"somewhere"}`, "position", "expected"},
+		{"steer", `{`, "", "read the input"},
+		{"dance", `{}`, "name", "no such call"},
+	}
+	for _, tt := range tests {
+		p := refused(t, s, tt.call, tt.in)
+		if p.Field != tt.field || !strings.Contains(p.Message, tt.says) {
+			t.Errorf("%s(%s) = %+v, want field %q and %q", tt.call, tt.in, p, tt.field, tt.says)
+		}
+	}
+}
+
+// The vectors that the page makes its hashes by fold here too.
+func TestEventsOfThePage(t *testing.T) {
+	text, err := os.ReadFile("../../search/incident/testdata/hash-vectors.json")
+	if err != nil {
+		t.Fatal(err)
+	}
+	s := newSession()
+	ask[any](t, s, "add_events", `{"events":`+string(text)+`}`)
+	got := ask[struct{ Incidents []incident.State }](t, s, "states", "")
+	if len(got.Incidents) != 1 || len(got.Incidents[0].Marks) != 2 {
+		t.Errorf("states = %+v", got)
+	}
+}
