@@ -92,6 +92,6 @@ func (g *Geodesic) at(rangeM float64) (Position, arc) {
 
 	lat := math.Atan2(beta2.sin, axisRatio*beta2.cos)
 	lon := normLonRad(float64(g.start.Lng) + lam12)
-	alpha2 := arc{g.alpha0.sin, g.alpha0.cos * sig2.cos}
+	alpha2 := phase(g.alpha0.sin, g.alpha0.cos*sig2.cos)
 	return Position{s1.Angle(lat), s1.Angle(lon)}, alpha2
 }
