@@ -7,13 +7,15 @@ import (
 	"math"
 
 	"github.com/golang/geo/s1"
-	"github.com/golang/geo/s2"
 )
 
 // Position is a point on the WGS 84 ellipsoid: geodetic latitude, north
 // positive, and longitude, east positive. It has the shape of s2.LatLng and
-// converts to it, but not its methods, which measure on a sphere.
-type Position s2.LatLng
+// converts to it, but not its methods, which measure on a sphere; and not the
+// package, which would make the engine on the phones a tenth larger.
+type Position struct {
+	Lat, Lng s1.Angle
+}
 
 // PositionFromDegrees makes a position from degrees; the longitude is brought
 // into [-180, 180). It does not check the latitude: see [Position.Validate].
