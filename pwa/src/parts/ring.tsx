@@ -3,14 +3,14 @@
 // and where to look now (filled disc with its halo). To scale, so the wedge
 // touches the halo.
 
-import type { RingView } from "../state/return_view";
+import type { RingView } from "./ring_view";
 
 /** Radius of the rim in drawing units; the drawing is 240 wide. */
 const R = 100;
 
 interface Props {
   view: RingView;
-  words: { north: string; wind: string; drift: string; scale: string };
+  words: { north: string; wind: string; drift: string };
 }
 
 export function Ring({ view, words }: Props) {

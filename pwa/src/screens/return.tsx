@@ -32,7 +32,7 @@ export function Return({ selection }: { selection: Selection }) {
       <div class="picture">
         <Ring
           view={view.ring}
-          words={{ north: t("return.north"), wind: t("return.wind"), drift: t("return.drift"), scale: "" }}
+          words={{ north: t("return.north"), wind: t("return.wind"), drift: t("return.drift") }}
         />
         <p class="picture-up">{view.ring.up}</p>
         <p class="picture-scale">{t("return.ring_scale", { range: rangeText(view.ring.radiusM) })}</p>

@@ -2,6 +2,7 @@
 // says, so that it can be tested without a screen. It rounds and words; it
 // computes nothing that a person steers by.
 
+import type { RingView } from "../parts/ring_view";
 import { type Key, isKey, t } from "../text/text";
 import * as f from "../units/format";
 import type { Frame } from "../wire/frame";
@@ -42,24 +43,6 @@ export interface ReturnView {
   cautions: string[];
   ring: RingView;
   stale: boolean;
-}
-
-export interface RingView {
-  /** What is up, in words. */
-  up: string;
-  /** Where on the ring north is, degrees clockwise from up. */
-  northDeg: number;
-  /** Where the bow points, degrees true; 0 where it is not known. */
-  headingDeg: number;
-  wedge: { centreDeg: number; halfDeg: number } | null;
-  /** Metres from own vessel to the ring. */
-  radiusM: number;
-  disc: { angleDeg: number; rangeM: number; errorM: number } | null;
-  cross: { angleDeg: number; rangeM: number } | null;
-  windDeg: number | null;
-  driftDeg: number | null;
-  stale: boolean;
-  text: string;
 }
 
 /** Builds the view. */

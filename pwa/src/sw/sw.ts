@@ -10,7 +10,7 @@ const scope = self as unknown as ServiceWorkerGlobalScope;
 /** Path and content hash of every file of the page; filled in by the build. */
 const FILES = JSON.parse("__FILES__") as [path: string, hash: string][];
 const PREFIX = "wakeback-";
-const VERSION = PREFIX + "__VERSION__";
+const VERSION = `${PREFIX}__VERSION__`;
 /** Large, and not needed to mark: a failure to fetch these does not stop the rest. */
 const LATER = ["/engine.wasm", "/wasm_exec.js"];
 

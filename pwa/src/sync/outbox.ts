@@ -35,8 +35,8 @@ export interface TrackPoint {
 
 const TRIP = "wakeback.tripwire";
 const DEVICE = "wakeback.device";
-/** How many marks the tripwire holds: our choice, three fit in 1 kB. */
-const TRIP_MARKS = 3;
+/** Room of the tripwire, in characters: small enough to be written at once, at the press. */
+const TRIP_ROOM = 1000;
 
 export class Outbox {
   /** Called after the outbox changed: an event was added, acknowledged or refused. */
@@ -47,17 +47,7 @@ export class Outbox {
   private reason = "";
 
   constructor(name = "wakeback") {
-    this.db = openDB<Schema>(name, 1, {
-      upgrade(db) {
-        db.createObjectStore("chain");
-        db.createObjectStore("outbox", { keyPath: "id" });
-        db.createObjectStore("known", { keyPath: "id" });
-        db.createObjectStore("refused", { keyPath: "id" });
-        db.createObjectStore("meta");
-        db.createObjectStore("track", { keyPath: "ms" });
-      },
-      blocking: (_now, _next, event) => (event.target as IDBDatabase).close(),
-    });
+    this.db = open(name);
     this.db.catch((err: unknown) => this.fallBack(err));
   }
 
@@ -82,7 +72,9 @@ export class Outbox {
   /** Copies a mark into the tripwire, at once and without waiting. */
   trip(draft: Draft): void {
     const held = readTrip().filter((d) => d.id !== draft.id);
-    writeTrip([...held, draft].slice(-TRIP_MARKS));
+    const marks = [...held, draft];
+    while (marks.length > 1 && JSON.stringify(marks).length > TRIP_ROOM) marks.shift();
+    writeTrip(marks);
   }
 
   /**
@@ -250,6 +242,22 @@ export class Outbox {
       return otherwise;
     }
   }
+}
+
+/** Async, so that a browser that throws at once is the same as one that fails later. */
+async function open(name: string): Promise<IDBPDatabase<Schema>> {
+  return openDB<Schema>(name, 1, {
+    upgrade(db) {
+      db.createObjectStore("chain");
+      db.createObjectStore("outbox", { keyPath: "id" });
+      db.createObjectStore("known", { keyPath: "id" });
+      db.createObjectStore("refused", { keyPath: "id" });
+      db.createObjectStore("meta");
+      db.createObjectStore("track", { keyPath: "ms" });
+    },
+    // A newer page of ours must not wait for this one.
+    blocking: (_now, _next, event) => (event.target as IDBDatabase).close(),
+  });
 }
 
 function freshChain(): Chain {

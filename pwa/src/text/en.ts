@@ -13,7 +13,6 @@ export const en = {
   "mark.second": "SECOND PERSON",
   "mark.test": "Test mark",
   "mark.test.done": "Test mark logged {time}. Not a person.",
-  "mark.said": "Marked {time} UTC, number {number}",
 
   "ready.title": "Ready",
   "ready.works": "Working",
@@ -268,7 +267,6 @@ export const en = {
   "setup.pair_bad": "The code was not taken: {why}",
   "setup.pair_ok": "Paired",
   "setup.sounds": "Hear the four sounds",
-  "setup.drill": "Drill",
   "setup.drill_on": "Begin a drill",
   "setup.drill_off": "End the drill",
   "setup.charge": "I am in charge",
@@ -280,8 +278,6 @@ export const en = {
   "sound.closing": "Closing",
   "sound.lost": "Something is lost",
 
-  "lost.fix": "The fix is lost",
-  "lost.server": "The server is lost",
 
   "kind.marked": "Mark",
   "kind.mark_placed": "Mark placed from the track",
