@@ -223,6 +223,25 @@ func TestGeodesicAgainstGeodSolve(t *testing.T) {
 	}
 }
 
+// TestNewtonSteps guards the guesses: with a bad one the answer is still right,
+// but late. Our choice of limits: what is measured, and a third more.
+func TestNewtonSteps(t *testing.T) {
+	for i, class := range lineClasses {
+		r := rand.New(rand.NewPCG(uint64(i), 5))
+		const n = 20000
+		sum, most := 0, 0
+		for range n {
+			p := class.draw(r)
+			trials := solveInverse(p.a, p.b).trials
+			sum, most = sum+trials, max(most, trials)
+		}
+		t.Logf("%s: %.2f trials on average, %d at most", class.name, float64(sum)/n, most)
+		if mean := float64(sum) / n; mean > 5 || most > 8 {
+			t.Errorf("%s: %.2f trials on average, %d at most", class.name, mean, most)
+		}
+	}
+}
+
 // TestDirectAgainstGeodSolve goes far, also backwards and more than once
 // around.
 func TestDirectAgainstGeodSolve(t *testing.T) {
@@ -285,21 +304,30 @@ func BenchmarkInverse(b *testing.B) {
 }
 
 // BenchmarkGeodSolve times the program on the same lines as BenchmarkInverse,
-// reading and printing included, as a program is used. What it costs to read
-// and print is found by giving it a direct problem of range 0.
+// reading and printing included, as a program is used. What these cost is
+// about what it takes for lines of no length: the last sort.
 func BenchmarkGeodSolve(b *testing.B) {
-	for _, class := range []int{0, 2} {
-		b.Run(lineClasses[class].name, func(b *testing.B) {
-			ps := benchPairs(class)
+	ps0 := benchPairs(0)
+	for _, c := range []struct {
+		name string
+		line func(i int) pair
+	}{
+		{lineClasses[0].name, pickFrom(ps0)},
+		{lineClasses[2].name, pickFrom(benchPairs(2))},
+		{"no-length", func(i int) pair { p := ps0[i&4095]; return pair{p.a, p.a} }},
+	} {
+		b.Run(c.name, func(b *testing.B) {
 			lines := make([]string, b.N)
 			for i := range lines {
-				lines[i] = ps[i&4095].input()
+				lines[i] = c.line(i).input()
 			}
 			b.ResetTimer()
 			geodSolve(b, lines, "-i")
 		})
 	}
 }
+
+func pickFrom(ps []pair) func(int) pair { return func(i int) pair { return ps[i&4095] } }
 
 func BenchmarkDirect(b *testing.B) {
 	a := PositionFromDegrees(54.1, 7.9)

@@ -10,6 +10,7 @@ type solution struct {
 	reducedM   float64 // m12: see span.reducedLength
 	scale12    float64 // M12: see span.scale
 	scale21    float64 // M21, the same from the end to the start
+	trials     int     // geodesics tried until one met the end; 0 where none was needed
 }
 
 // problem is the inverse problem in the one arrangement that is solved

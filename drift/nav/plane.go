@@ -15,23 +15,23 @@ func NewPlane(origin Position) Plane { return Plane{origin: origin} }
 // Origin is the point with zero offset.
 func (pl Plane) Origin() Position { return pl.origin }
 
-// Offset returns where p lies from the origin.
+// Offset returns where p lies from the origin; NaN if either is no position.
 func (pl Plane) Offset(p Position) Offset {
 	line := Inverse(pl.origin, p)
-	bearing, ok := line.Bearing.Get()
-	if !ok {
+	if line.RangeM == 0 {
 		return Offset{}
 	}
-	return Along(bearing, line.RangeM)
+	return Along(line.Bearing.Or(TrueDeg(nan)), line.RangeM)
 }
 
-// Position returns the point that lies off the origin by o.
+// Position returns the point that lies off the origin by o; NaN if o is not
+// finite or the origin no position.
 func (pl Plane) Position(o Offset) Position {
-	dir, ok := o.Direction().Get()
-	if !ok {
+	rangeM := o.RangeM()
+	if rangeM == 0 {
 		return pl.origin
 	}
-	p, _ := Direct(pl.origin, dir, o.RangeM())
+	p, _ := Direct(pl.origin, o.Direction().Or(TrueDeg(nan)), rangeM)
 	return p
 }
 

@@ -20,7 +20,11 @@ type Position struct {
 // PositionFromDegrees makes a position from degrees; the longitude is brought
 // into [-180, 180). It does not check the latitude: see [Position.Validate].
 func PositionFromDegrees(latDeg, lonDeg float64) Position {
-	return Position{Lat: degrees(latDeg), Lng: degrees(normLonDeg(lonDeg))}
+	lng := degrees(normLonDeg(lonDeg))
+	if lng >= math.Pi { // a hair less than 180 degrees may round up to it
+		lng = -math.Pi
+	}
+	return Position{Lat: degrees(latDeg), Lng: lng}
 }
 
 func degrees(d float64) s1.Angle { return s1.Angle(d * (math.Pi / 180)) }
@@ -68,12 +72,13 @@ type wirePosition struct {
 	Lon *float64 `json:"lon"`
 }
 
-// MarshalJSON writes {"lat": ..., "lon": ...} in degrees, rounded to 1e-7.
+// MarshalJSON writes {"lat": ..., "lon": ...} in degrees, rounded to 1e-7, the
+// longitude in [-180, 180).
 func (p Position) MarshalJSON() ([]byte, error) {
 	if err := p.Validate(); err != nil {
 		return nil, err
 	}
-	lat, lon := RoundE7(p.LatDeg()), RoundE7(p.LonDeg())
+	lat, lon := RoundE7(p.LatDeg()), normLonDeg(RoundE7(p.LonDeg()))
 	return json.Marshal(wirePosition{&lat, &lon})
 }
 
@@ -93,5 +98,6 @@ func (p *Position) UnmarshalJSON(data []byte) error {
 	return nil
 }
 
-// RoundE7 rounds degrees to 1e-7, the step in which positions are stored.
-func RoundE7(deg float64) float64 { return math.Round(deg*1e7) / 1e7 }
+// RoundE7 rounds degrees to 1e-7, the step in which positions are stored. Zero
+// has no sign, so that equal positions are equal in writing.
+func RoundE7(deg float64) float64 { return math.Round(deg*1e7)/1e7 + 0 }

@@ -34,18 +34,26 @@ func (f Fix) Velocity() Opt[Velocity] {
 
 // Track is a sequence of fixes in order of time, no two of one instant. The
 // zero Track is empty and ready.
+//
+// A copy of a Track is a snapshot: it stays as it is, and may be read, while
+// fixes are added to the original or trimmed from it. Add to one of the two
+// only.
 type Track struct {
-	fixes []Fix
+	fixes []Fix // never changed in place, only appended to
 }
 
 // NewTrack makes a track; the fixes may come in any order, and of several of
 // one instant the last given stays. The slice is not kept.
 func NewTrack(fixes []Fix) Track {
-	var t Track
-	for _, f := range fixes {
-		t.Add(f)
+	sorted := slices.Clone(fixes)
+	slices.SortStableFunc(sorted, func(a, b Fix) int { return a.At.Compare(b.At) })
+	kept := sorted[:0]
+	for i, f := range sorted {
+		if i+1 == len(sorted) || !sorted[i+1].At.Equal(f.At) {
+			kept = append(kept, f)
+		}
 	}
-	return t
+	return Track{kept}
 }
 
 // Add puts a fix in its place in time. A fix of an instant that is there
@@ -55,6 +63,7 @@ func (t *Track) Add(f Fix) {
 		t.fixes = append(t.fixes, f)
 		return
 	}
+	t.fixes = slices.Clone(t.fixes)
 	i := t.after(f.At)
 	if i > 0 && t.fixes[i-1].At.Equal(f.At) {
 		t.fixes[i-1] = f
@@ -63,10 +72,10 @@ func (t *Track) Add(f Fix) {
 	t.fixes = slices.Insert(t.fixes, i, f)
 }
 
-// Trim drops the fixes before cut.
+// Trim drops the fixes before cut. Their memory goes with the next growth.
 func (t *Track) Trim(cut time.Time) {
 	i := sort.Search(len(t.fixes), func(i int) bool { return !t.fixes[i].At.Before(cut) })
-	t.fixes = slices.Delete(t.fixes, 0, i)
+	t.fixes = t.fixes[i:]
 }
 
 // after is the index of the first fix later than at.
@@ -106,9 +115,11 @@ func (t Track) FirstAfter(at time.Time) Opt[Fix] {
 	return Some(t.fixes[i])
 }
 
-// At interpolates between the two fixes around at, along the straight line
-// between them. It is absent before the first fix, after the last, and across
-// a gap longer than maxGap.
+// At interpolates between the two fixes around at, along the geodesic between
+// them at an even speed. It is absent before the first fix, after the last,
+// and across a gap longer than maxGap. Speed and course are those of the
+// earlier fix; the error is the larger of the two, as far as they are stated,
+// and does not hold what the vessel may have done in between.
 func (t Track) At(at time.Time, maxGap time.Duration) Opt[Fix] {
 	i := t.after(at)
 	if i == 0 {
@@ -128,9 +139,19 @@ func (t Track) At(at time.Time, maxGap time.Duration) Opt[Fix] {
 	}
 	f := a
 	f.At = at
+	f.ErrorM = larger(a.ErrorM, b.ErrorM)
 	frac := float64(at.Sub(a.At)) / float64(gap)
 	f.Position = a.Position.Shift(NewPlane(a.Position).Offset(b.Position).Scale(frac))
 	return Some(f)
+}
+
+// larger is the larger of two values that may be absent.
+func larger(a, b Opt[float64]) Opt[float64] {
+	x, ok := a.Get()
+	if y, also := b.Get(); also && (!ok || y > x) {
+		return b
+	}
+	return a
 }
 
 // Between returns the fixes from one moment to another, both included.

@@ -63,7 +63,7 @@ func (v Velocity) SpeedMs() float64 { return math.Hypot(v.EastMs, v.NorthMs) }
 // SpeedKn is the speed in knots.
 func (v Velocity) SpeedKn() float64 { return v.SpeedMs() / MsPerKn }
 
-// Direction is where the velocity goes to; absent at rest.
+// Direction is where the velocity goes to; absent at rest and for NaN.
 func (v Velocity) Direction() Opt[TrueDeg] { return direction(v.EastMs, v.NorthMs) }
 
 // For is the shift after moving so for d.
@@ -84,7 +84,7 @@ func (o Offset) Scale(f float64) Offset { return Offset{o.EastM * f, o.NorthM * 
 // RangeM is the length in metres.
 func (o Offset) RangeM() float64 { return math.Hypot(o.EastM, o.NorthM) }
 
-// Direction is where the shift leads to; absent when it is nil.
+// Direction is where the shift leads to; absent when it is nil or NaN.
 func (o Offset) Direction() Opt[TrueDeg] { return direction(o.EastM, o.NorthM) }
 
 // Along makes the shift of rangeM metres towards dir.
@@ -94,7 +94,7 @@ func Along(dir TrueDeg, rangeM float64) Offset {
 }
 
 func direction(east, north float64) Opt[TrueDeg] {
-	if east == 0 && north == 0 {
+	if east == 0 && north == 0 || math.IsNaN(east) || math.IsNaN(north) {
 		return None[TrueDeg]()
 	}
 	return Some(True(math.Atan2(east, north) * (180 / math.Pi)))
