@@ -140,7 +140,7 @@ func beside(r *rand.Rand, a Position, withinM float64) pair {
 	sin, cos := math.Sincos(2 * math.Pi * r.Float64())
 	sa, ca := math.Sincos(float64(a.Lat))
 	lat := float64(a.Lat) + d*cos
-	if math.Abs(a.LatDeg()) > 89.9 {
+	if math.Abs(a.LatDeg()) > 85 { // on a flat map around the pole
 		x, y := math.Hypot(d*sin, ca-d*cos), a.LonDeg()+math.Atan2(d*sin, ca-d*cos)*180/math.Pi
 		return pair{a, PositionFromDegrees(math.Copysign(90-x*180/math.Pi, sa), y)}
 	}
