@@ -16,7 +16,7 @@ const (
 	Williamson Name = "williamson"
 	Scharnow   Name = "scharnow"
 	RaceTrack  Name = "race-track"
-	StopBack   Name = "stop"
+	SlowCircle Name = "slow-circle"
 )
 
 // Side is a side of the vessel.
@@ -42,10 +42,14 @@ func (s Side) String() string {
 // phase is one helm order and the heading change from the original course, to
 // the side of the first turn, at which it ends.
 type phase struct {
-	helm   float64 // to the side of the first turn
-	until  float64 // change of heading that ends it
-	rising bool    // reached from below
-	word   string
+	helm     float64 // to the side of the first turn
+	until    float64 // change of heading that ends it
+	rising   bool    // reached from below
+	word     string
+	hold     bool // hold the heading of until, till the person is abaftDeg from the bow
+	abaftDeg float64
+	facing   bool // also ends when the person is ahead
+	slow     bool // with the engine idling
 }
 
 // Textbook angles: IAMSAR Manual vol. III as reprinted (single turn 250,
@@ -65,18 +69,18 @@ const (
 func sequence(n Name, shiftDeg float64) ([]phase, error) {
 	switch n {
 	case Single:
-		return []phase{{1, singleUntil, true, "hard over to the side of the fall"}}, nil
+		return []phase{{helm: 1, until: singleUntil, rising: true, word: "hard over to the side of the fall"}}, nil
 	case Williamson:
 		return []phase{
-			{1, shiftDeg, true, "hard over to the side of the fall"},
-			{-1, -(180 - midshipsShort), false, "shift the helm hard over to the other side"},
-			{0, -180, false, "midships, meet her"},
+			{helm: 1, until: shiftDeg, rising: true, word: "hard over to the side of the fall"},
+			{helm: -1, until: -(180 - midshipsShort), word: "shift the helm hard over to the other side"},
+			{helm: 0, until: -180, word: "midships, meet her"},
 		}, nil
 	case Scharnow:
 		return []phase{
-			{1, shiftDeg, true, "hard over"},
-			{-1, 180 + midshipsShort, false, "shift the helm hard over to the other side"},
-			{0, 180, false, "midships, meet her"},
+			{helm: 1, until: shiftDeg, rising: true, word: "hard over"},
+			{helm: -1, until: 180 + midshipsShort, word: "shift the helm hard over to the other side"},
+			{helm: 0, until: 180, word: "midships, meet her"},
 		}, nil
 	}
 	return nil, fmt.Errorf("%w: %q", ErrManoeuvre, n)
@@ -111,56 +115,8 @@ type Point struct {
 	SpeedMs    float64
 }
 
-// turned is a run of a sequence in the water's frame.
-type turned struct {
-	orders []Order
-	path   []Point
-	end    State
-	endS   float64
-	peak   float64
-}
-
 // maxTurnS bounds a manoeuvre: no vessel takes an hour to come about.
 const maxTurnS = 3600
-
-// run steers the sequence through the model from a steady course.
-func (m Model) run(course nav.TrueDeg, side Side, seq []phase) (turned, error) {
-	s := m.start(course)
-	t, out := 0.0, turned{}
-	record := func() {
-		out.path = append(out.path, Point{t, nav.Offset{EastM: s.EastM, NorthM: s.NorthM}, nav.True(s.HeadingDeg), s.SpeedMs})
-	}
-	record()
-	sinceRecord := 0.0
-	for _, ph := range seq {
-		helm := Helm(ph.helm * float64(side))
-		out.orders = append(out.orders, Order{
-			AtS: t, Word: ph.word, Helm: helm, UntilOf: ph.until,
-			Until: course.Add(ph.until * float64(side)),
-		})
-		held, eased := 0.0, false
-		order := currentHelm(out.orders)
-		for !reached(s, course, side, ph) {
-			if held >= m.OrderDelayS {
-				order = helm
-			}
-			eased = eased || ph.stops(order, s, m)
-			s = m.step(s, ph.meet(order, eased, side), stepS)
-			t, held, sinceRecord = t+stepS, held+stepS, sinceRecord+stepS
-			out.peak = math.Max(out.peak, change(s, course, side))
-			if sinceRecord >= 1 {
-				record()
-				sinceRecord = 0
-			}
-			if t > maxTurnS {
-				return turned{}, fmt.Errorf("%w: the vessel does not come round within an hour", ErrManoeuvre)
-			}
-		}
-	}
-	record()
-	out.end, out.endS = s, t
-	return out, nil
-}
 
 // A vessel with a quick helm stops swinging short of the last heading once the
 // helm is midships. From the moment she swings slower than a tenth of her rate
@@ -186,14 +142,6 @@ func (ph phase) meet(order Helm, eased bool, side Side) Helm {
 		return Helm(easeHelm * float64(side))
 	}
 	return Helm(-easeHelm * float64(side))
-}
-
-// currentHelm is the helm that still lies while a new order is on its way.
-func currentHelm(orders []Order) Helm {
-	if len(orders) < 2 {
-		return 0
-	}
-	return orders[len(orders)-2].Helm
 }
 
 // change is how far the heading is from the original course, positive to the

@@ -32,13 +32,15 @@ func (m Model) Trial(n Name, shiftDeg float64) (Track, error) {
 	if err != nil {
 		return Track{}, err
 	}
-	r, err := m.run(0, Starboard, seq)
-	if err != nil {
-		return Track{}, err
+	r := newRunner(Case{Model: m, Heading: 0}, Starboard)
+	for _, ph := range seq {
+		if err := r.phase(ph); err != nil {
+			return Track{}, err
+		}
 	}
 	return Track{
-		AlongM: r.end.NorthM, OffsetM: r.end.EastM, TimeS: r.endS, RunM: r.end.RunM,
-		PeakDeg: r.peak, SpeedKn: r.end.SpeedMs / nav.MsPerKn, EndDeg: r.end.HeadingDeg,
+		AlongM: r.s.NorthM, OffsetM: r.s.EastM, TimeS: r.t, RunM: r.s.RunM,
+		PeakDeg: r.peakDeg, SpeedKn: r.s.SpeedMs / nav.MsPerKn, EndDeg: r.s.HeadingDeg,
 	}, nil
 }
 
@@ -47,7 +49,7 @@ func (m Model) Trial(n Name, shiftDeg float64) (Track, error) {
 // vessels. Found by bisection; where no angle between the limits does, the one
 // with the smallest offset is given.
 func (m Model) OwnShiftDeg(n Name) (shiftDeg, offsetM float64, err error) {
-	low, high := 10.0, 140.0
+	low, high := 1.0, 140.0
 	if n == Scharnow {
 		low, high = 190, 320
 	}
