@@ -33,6 +33,8 @@ export class Fake {
   /** Ticks are sent while true. */
   ticking = true;
   epoch = "fake-1";
+  /** Changes a file of the page on its way out. */
+  change = (_path, data) => data;
   /** Last fix to send to who connects. */
   fix = null;
   #http;
@@ -56,6 +58,11 @@ export class Fake {
     for (const s of this.#ws.clients) s.terminate();
     this.#http.closeAllConnections();
     await new Promise((done) => this.#http.close(done));
+  }
+
+  /** How many phones are connected. */
+  get clients() {
+    return this.#ws.clients.size;
   }
 
   send(message) {
@@ -115,7 +122,7 @@ export class Fake {
 
   #file(path, res) {
     try {
-      const data = readFileSync(join(dist, path));
+      const data = this.change(path, readFileSync(join(dist, path)));
       res.writeHead(200, { "content-type": TYPES[extname(path)] ?? "application/octet-stream" }).end(data);
     } catch {
       res.writeHead(404).end();

@@ -22,7 +22,7 @@ mark.onPress = ({ draft, kept }) => {
   });
 };
 
-document.documentElement.dataset.mark = "ready";
+document.documentElement.dataset.ready = "mark";
 watchPosition();
 
 // The page proper, once the button is painted and works.

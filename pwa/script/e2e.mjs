@@ -1,0 +1,53 @@
+// Runs the stories in Debian's Chromium: node script/e2e.mjs [part of a name].
+// Each has its own server and its own phones. A hard timer ends a run that hangs.
+
+import { existsSync, mkdirSync } from "node:fs";
+import { launch } from "./browser.mjs";
+import { stories as alone } from "./stories/alone.mjs";
+import { stories as looks } from "./stories/looks.mjs";
+import { stories as marking } from "./stories/marking.mjs";
+import { stories as real } from "./stories/real.mjs";
+import { stories as together } from "./stories/together.mjs";
+import { Stage } from "./stage.mjs";
+
+const LIMIT_MS = 8 * 60_000;
+const STORY_MS = 60_000;
+setTimeout(() => {
+  console.error("the stories took too long");
+  process.exit(3);
+}, LIMIT_MS).unref();
+
+if (!existsSync(new URL("../dist/index.html", import.meta.url))) {
+  console.error("the page is not built: npm run build");
+  process.exit(2);
+}
+mkdirSync(new URL("../test-results", import.meta.url), { recursive: true });
+
+const wanted = process.argv[2] ?? "";
+const all = { ...marking, ...together, ...alone, ...looks, ...real };
+const names = Object.keys(all).filter((n) => n.includes(wanted));
+let failed = 0;
+const browser = await launch();
+for (const name of names) {
+  const stage = new Stage(browser, name);
+  const began = Date.now();
+  let timer;
+  try {
+    const late = new Promise((_, no) => {
+      timer = setTimeout(() => no(new Error(`not done after ${STORY_MS} ms`)), STORY_MS);
+    });
+    const outcome = await Promise.race([all[name](stage), late]);
+    stage.noErrors();
+    console.log(`${outcome === "skipped" ? "skip" : "ok  "} ${name} (${Date.now() - began} ms)${stage.measured}`);
+  } catch (err) {
+    failed++;
+    console.error(`FAIL ${name}: ${err.stack ?? err}`);
+    await stage.evidence().catch(() => {});
+  } finally {
+    clearTimeout(timer);
+    await stage.close();
+  }
+}
+await browser.close();
+console.log(`${names.length - failed} of ${names.length} stories`);
+process.exit(failed > 0 || names.length === 0 ? 1 : 0);

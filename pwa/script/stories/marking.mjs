@@ -1,0 +1,172 @@
+// The press: what has to work whatever else does not.
+
+import { assert, until } from "../stage.mjs";
+
+export const stories = {
+  "scenario 1: wet thumb at night, one touch marks, every phone shows it within 2 s, nothing goes white": async (s) => {
+    const fake = await s.server();
+    const a = await s.phone({ palette: "night" });
+    const b = await s.phone({ palette: "night" });
+    await Promise.all([a.whole(), b.whole()]);
+    await until("both phones are connected", () => fake.clients === 2);
+    const brightest = [await brightestPixel(a)];
+    const before = Date.now();
+    // A drop of water lies on the glass elsewhere while the thumb lands.
+    const cdp = await a.cdp();
+    const box = await a.page.locator(".mark").boundingBox();
+    const thumb = { x: box.x + box.width / 2, y: box.y + box.height / 2, id: 1 };
+    const drop = { x: 30, y: 120, id: 0 };
+    await cdp.send("Input.dispatchTouchEvent", { type: "touchStart", touchPoints: [drop] });
+    await cdp.send("Input.dispatchTouchEvent", { type: "touchStart", touchPoints: [drop, thumb] });
+    const pressed = Date.now();
+    await cdp.send("Input.dispatchTouchEvent", { type: "touchEnd", touchPoints: [drop] });
+    await cdp.send("Input.dispatchTouchEvent", { type: "touchEnd", touchPoints: [] });
+    await a.returning(2000);
+    brightest.push(await brightestPixel(a));
+    await b.returning(2000);
+    const shownMs = Date.now() - pressed;
+    assert(shownMs < 2000, `the other phone showed it after ${shownMs} ms`);
+    assert.equal(fake.events.length, 1);
+    const at = Date.parse(fake.events[0].at);
+    assert(at >= before - 5 && at <= pressed + 50, `marked at ${at}, touched between ${before} and ${pressed}`);
+    for (const v of brightest) assert(v.blue < 100 && v.least < 100, `a pixel of ${JSON.stringify(v)}`);
+    s.measured = ` other phone after ${shownMs} ms`;
+  },
+
+  "scenario 2: an 80 ms touch marks, a long one makes no second mark, a skip is one": async (s) => {
+    const fake = await s.server();
+    const a = await s.phone();
+    await a.whole();
+    await a.mark(".mark", 80);
+    await a.returning();
+    await until("the mark is stored", () => fake.events.length === 1);
+    // Long, on the second person's touch: one more, not two, and the finger that lifts presses nothing else.
+    await a.page.waitForSelector(".touch .second");
+    await settled(a);
+    await a.mark(".touch .second", 1500);
+    await until("the second mark is stored", () => fake.events.length === 2);
+    await settled(a);
+    await a.holds("known", 2);
+    assert.deepEqual(fake.events.map((e) => e.kind), ["marked", "marked"]);
+  },
+
+  "MARK works within a second of opening, before the page proper is loaded and with no server": async (s) => {
+    const fake = await s.server();
+    const a = await s.phone({ open: false });
+    await a.page.route(/\/assets\/start/, () => {}); // never answered
+    await a.page.route("**/api/**", (r) => r.abort());
+    await a.page.goto(s.url, { waitUntil: "commit" });
+    await a.ready();
+    const usableMs = await a.page.evaluate(() => Math.round(performance.now()));
+    assert(usableMs < 1000, `usable after ${usableMs} ms`);
+    await a.mark();
+    await a.says("Kept on this phone");
+    const [event] = await a.holds("outbox", 1);
+    assert.equal(event.kind, "marked");
+    assert.equal(event.body.source, "phone");
+    assert.equal(fake.events.length, 0);
+    // The page proper comes up later and knows of it.
+    await a.page.unrouteAll({ behavior: "ignoreErrors" });
+    await a.page.reload({ waitUntil: "commit" });
+    await a.returning();
+    await until("it reached the server once", () => fake.events.length === 1);
+    await a.holds("outbox", 0);
+    s.measured = ` usable after ${usableMs} ms`;
+  },
+
+  "drops and fingers elsewhere mark nothing": async (s) => {
+    const fake = await s.server();
+    const a = await s.phone();
+    await a.whole();
+    await a.holds("chain", 1);
+    for (const [x, y] of [[30, 300], [200, 350], [10, 10], [195, 838]]) await a.touch(x, y);
+    await a.page.keyboard.press("Enter");
+    await a.holds("known", 0);
+    assert.equal(fake.events.length, 0);
+    assert.equal(await a.page.locator(".return").count(), 0);
+  },
+
+  "a key and a screen reader mark too": async (s) => {
+    const fake = await s.server();
+    const a = await s.phone();
+    await a.whole();
+    await a.page.locator(".mark").focus();
+    await a.page.keyboard.press("Enter");
+    await a.returning();
+    await until("the mark is stored", () => fake.events.length === 1);
+  },
+
+  "scenario 9: no position ever: marked at once, said plainly, clock runs": async (s) => {
+    const fake = await s.server();
+    const a = await s.phone({ geolocation: null });
+    await a.whole();
+    await a.says("not allowed");
+    await a.mark();
+    await a.returning();
+    await until("the mark is stored", () => fake.events.length === 1);
+    assert.deepEqual(fake.events[0].body, { source: "nothing" });
+    await a.says("no position");
+    await a.says("no fix");
+    await a.says("00:00:0");
+  },
+
+  "scenario 10: a phone 3 min 12 s fast marks on common time, and the log shows both": async (s) => {
+    const fake = await s.server();
+    fake.clockAheadMs = -192_000;
+    const a = await s.phone();
+    await a.whole();
+    await a.says("this phone is 3 min fast");
+    await a.mark();
+    await a.returning();
+    await until("the mark is stored", () => fake.events.length === 1);
+    const e = fake.events[0];
+    const apart = Date.parse(e.device_at) - Date.parse(e.at);
+    assert(Math.abs(apart - 192_000) <= e.clock_error_ms + 1, `device and common time are ${apart} ms apart`);
+    assert(e.clock_error_ms < 500);
+    await a.tap("More", ".touch");
+    await a.tap("People and log");
+    await a.says("phone's clock");
+  },
+
+  "a test mark is logged as a test and calls nobody": async (s) => {
+    const fake = await s.server();
+    const a = await s.phone();
+    const b = await s.phone();
+    await Promise.all([a.whole(), b.whole()]);
+    await a.tap("Set up");
+    await a.tap("Test mark");
+    await until("it is stored", () => fake.events.length === 1);
+    assert.equal(fake.events[0].test, true);
+    await a.says("Not a person");
+    await b.holds("known", 1);
+    assert.equal(await b.page.locator(".return").count(), 0);
+    await a.tap("Close");
+    assert.equal(await a.page.locator(".return").count(), 0);
+  },
+};
+
+/** Until touches so soon after a mark are taken again. */
+async function settled(p) {
+  await p.page.evaluate(() => new Promise((ok) => setTimeout(ok, 700)));
+}
+
+/** The brightest pixel of the screen: its least colour (white has all), and the most blue. */
+async function brightestPixel(p) {
+  const png = (await p.page.screenshot()).toString("base64");
+  return p.page.evaluate(async (data) => {
+    const image = new Image();
+    image.src = `data:image/png;base64,${data}`;
+    await image.decode();
+    const canvas = new OffscreenCanvas(image.width, image.height);
+    const c = canvas.getContext("2d");
+    c.drawImage(image, 0, 0);
+    const d = c.getImageData(0, 0, image.width, image.height).data;
+    let least = 0;
+    let blue = 0;
+    for (let i = 0; i < d.length; i += 4) {
+      least = Math.max(least, Math.min(d[i], d[i + 1], d[i + 2]));
+      blue = Math.max(blue, d[i + 2]);
+    }
+    return { least, blue };
+  }, png);
+}
