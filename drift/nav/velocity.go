@@ -19,7 +19,8 @@ type Velocity struct {
 
 // Offset is a shift in a local level frame, in metres.
 type Offset struct {
-	EastM, NorthM float64
+	EastM  float64 `json:"east_m"`
+	NorthM float64 `json:"north_m"`
 }
 
 // Towards makes the velocity of something going towards dir at speedKn: a

@@ -15,6 +15,7 @@ type Code string
 const (
 	SteerTo      Code = "steer_to"       // towards where to look now
 	ComeAbout    Code = "come_about"     // the person is astern: turn back to the bearing
+	SteerLeg     Code = "steer_leg"      // along a search leg
 	LookAllRound Code = "look_all_round" // the error is as large as the range
 	NoFix        Code = "no_fix"         // the own position is not known
 	NoPosition   Code = "no_position"    // the place of the fall is not known
@@ -99,6 +100,9 @@ func (d Do) English() string {
 	switch d.Code {
 	case SteerTo, ComeAbout:
 		return d.steerEnglish()
+	case SteerLeg:
+		bearing, _ := d.BearingDeg.Get()
+		return "Search leg: steer " + bearing.String() + "."
 	case LookAllRound:
 		return "Look all round: the person is as near as the error is large."
 	case NoFix:

@@ -42,6 +42,9 @@ type Frame struct {
 	ClosingKn nav.Opt[float64] `json:"closing_kn"`
 	EtaS      nav.Opt[float64] `json:"eta_s"`
 
+	// Leg is the search leg being steered, if there is one.
+	Leg nav.Opt[LegSeen] `json:"leg,omitzero"`
+
 	Do       Do       `json:"do"`
 	Cautions []string `json:"cautions"`
 }

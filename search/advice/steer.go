@@ -46,6 +46,7 @@ func Steer(in Input) Frame {
 	errorM := f.errorM(in.Own)
 	f.wedge(errorM)
 	f.Do = f.doFor(p, errorM)
+	f.leg(in, p)
 	f.cautions(in, p)
 	return f
 }

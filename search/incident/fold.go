@@ -15,27 +15,30 @@ type folder struct {
 	chosen map[PersonNo]EventID
 	// early are events about a mark that stand before it in the log, because
 	// two clocks differ; they are applied as soon as the mark is there.
-	early   map[EventID][]*entry
-	placed  map[EventID]Place
-	persons map[PersonNo]*PersonState
-	windows map[PersonNo][]*entry // missing reports and clues, in order
-	roles   map[string]RoleHeld
-	joined  map[IncidentID]bool
-	signs   []sign // signs of a person that keep an incident open
+	early map[EventID][]*entry
+	// earlySearch is the same for events about a search that was not laid yet.
+	earlySearch map[EventID][]*entry
+	placed      map[EventID]Place
+	persons     map[PersonNo]*PersonState
+	windows     map[PersonNo][]*entry // missing reports and clues, in order
+	roles       map[string]RoleHeld
+	joined      map[IncidentID]bool
+	signs       []sign // signs of a person that keep an incident open
 	// decidedOn is the device on which the status was set.
 	decidedOn DeviceID
 }
 
 func newFolder(id IncidentID) *folder {
 	return &folder{
-		s:       State{ID: id, Status: Open, Marks: []Mark{}, Persons: []PersonState{}},
-		chosen:  make(map[PersonNo]EventID),
-		early:   make(map[EventID][]*entry),
-		placed:  make(map[EventID]Place),
-		persons: make(map[PersonNo]*PersonState),
-		windows: make(map[PersonNo][]*entry),
-		roles:   make(map[string]RoleHeld),
-		joined:  make(map[IncidentID]bool),
+		s:           State{ID: id, Status: Open, Marks: []Mark{}, Persons: []PersonState{}},
+		chosen:      make(map[PersonNo]EventID),
+		early:       make(map[EventID][]*entry),
+		earlySearch: make(map[EventID][]*entry),
+		placed:      make(map[EventID]Place),
+		persons:     make(map[PersonNo]*PersonState),
+		windows:     make(map[PersonNo][]*entry),
+		roles:       make(map[string]RoleHeld),
+		joined:      make(map[IncidentID]bool),
 	}
 }
 
@@ -96,6 +99,8 @@ func (f *folder) apply(e *entry) {
 		f.stoodDown(e, b)
 	case *Order:
 		f.order(e, b)
+	case *SearchLaid, *LegBegun, *LegEnded, *SearchWord:
+		f.search(e)
 	default:
 		f.keep(e)
 	}

@@ -360,7 +360,7 @@ func TestFoldIsTheSameInAnyOrder(t *testing.T) {
 // anything, at times that collide and run backwards.
 func randomStory(t *testing.T, rt *rapid.T) *story {
 	s := newStory(t)
-	var marks, events []EventID
+	var marks, events, searches []EventID
 	for i := range rapid.IntRange(1, 40).Draw(rt, "n") {
 		device := rapid.SampledFrom([]string{"a", "b", "c"}).Draw(rt, "device")
 		sec := float64(rapid.IntRange(-30, 60).Draw(rt, "sec") + i)
@@ -376,7 +376,7 @@ func randomStory(t *testing.T, rt *rapid.T) *story {
 			return rapid.SampledFrom(ids).Draw(rt, "pick")
 		}
 		var e Event
-		switch rapid.IntRange(0, 15).Draw(rt, "kind") {
+		switch rapid.IntRange(0, 19).Draw(rt, "kind") {
 		case 0, 1:
 			m := markedAt(54, 7)
 			m.Person = person
@@ -408,12 +408,57 @@ func randomStory(t *testing.T, rt *rapid.T) *story {
 			e = s.say(device, sec, KindMissing, Missing{Person: person, LastSeen: s.at(-9000), Noticed: s.at(sec)})
 		case 14:
 			e = s.say(device, sec, KindClue, Clue{Person: person, Text: "x", Sure: Probable, NotBefore: nav.Some(s.at(sec - 1000))})
-		default:
+		case 15:
 			e = s.say(device, sec, KindRole, Role{Role: "helm", Name: device})
+		case 16:
+			e = s.say(device, sec, KindSearchLaid, plan())
+			searches = append(searches, e.ID)
+		case 17:
+			e = s.say(device, sec, KindLegBegun, LegBegun{Search: pick(searches), Leg: rapid.IntRange(1, 3).Draw(rt, "leg")})
+		case 18:
+			e = s.say(device, sec, KindLegEnded, LegEnded{Search: pick(searches), Leg: rapid.IntRange(1, 3).Draw(rt, "leg"), Part: 1, How: "run"})
+		default:
+			e = s.say(device, sec, KindSearchPaused, SearchWord{Search: pick(searches)})
 		}
 		events = append(events, e.ID)
 	}
 	return s
+}
+
+// plan is a search of two legs.
+func plan() SearchLaid {
+	return SearchLaid{
+		Pattern: "square", Datum: nav.PositionFromDegrees(54, 7), Begin: t0, SpeedKn: 5,
+		Legs: []LegLaid{
+			{Kind: "search", CourseDeg: 0, LengthM: 185.2, To: nav.Offset{NorthM: 185.2}},
+			{Kind: "search", CourseDeg: 90, LengthM: 185.2, From: nav.Offset{NorthM: 185.2}, To: nav.Offset{EastM: 185.2, NorthM: 185.2}},
+		},
+	}
+}
+
+// The helm leaves leg 1 after 40 per cent and runs leg 2: that is what stands,
+// also when the phone that began the leg has a clock that is behind.
+func TestScenario22LegsNotRun(t *testing.T) {
+	s := newStory(t)
+	s.say("a", 0, KindMarked, markedAt(54, 7))
+	laid := s.say("a", 100, KindSearchLaid, plan())
+	s.say("b", 95, KindLegBegun, LegBegun{Search: laid.ID, Leg: 1})
+	s.say("a", 200, KindLegEnded, LegEnded{Search: laid.ID, Leg: 1, Part: 0.4, How: "broken_off", Lookouts: nav.Some(2)})
+	s.say("a", 201, KindLegBegun, LegBegun{Search: laid.ID, Leg: 2})
+	search := s.state().Searches[0]
+	if search.Status != SearchRunning || search.Leg != 2 || len(search.Done) != 2 {
+		t.Fatalf("search = %s", toJSON(t, search))
+	}
+	if d := search.Done[0]; d.Part != 0.4 || d.How != "broken_off" || !d.BegunAt.Equal(s.at(95)) || !d.EndedAt.Equal(s.at(200)) {
+		t.Errorf("leg 1 = %s", toJSON(t, d))
+	}
+	if !search.Done[1].EndedAt.IsZero() || search.Done[1].Part != 0 {
+		t.Errorf("leg 2 counts as run before it ended: %s", toJSON(t, search.Done[1]))
+	}
+	s.say("a", 300, KindLegEnded, LegEnded{Search: laid.ID, Leg: 2, Part: 1, How: "run"})
+	if got := s.state().Searches[0].Status; got != SearchFinished {
+		t.Errorf("status = %s", got)
+	}
 }
 
 func TestOpenAt(t *testing.T) {

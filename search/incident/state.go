@@ -53,6 +53,8 @@ type State struct {
 	Orders    []OrderSaid `json:"orders,omitempty"`
 	Notes     []NoteSaid  `json:"notes,omitempty"`
 
+	Searches []Search `json:"searches,omitempty"`
+
 	// Unread counts events of kinds this program does not know, and events
 	// whose body it could not read; they are kept in the log.
 	Unread int `json:"unread,omitempty"`
