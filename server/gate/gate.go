@@ -277,3 +277,14 @@ func cleanName(name string) (string, error) {
 	}
 	return name, nil
 }
+
+// Device finds a paired device.
+func (g *Gate) Device(id incident.DeviceID) (Device, error) {
+	g.mu.RLock()
+	defer g.mu.RUnlock()
+	r, ok := g.devices[id]
+	if !ok {
+		return Device{}, ErrNoDevice
+	}
+	return r.Device, nil
+}
