@@ -17,6 +17,7 @@ var methods = map[string]method{
 	"steer":           steer,
 	"back":            back,
 	"path":            path,
+	"propose_search":  propose,
 	"parse_position":  parsePosition,
 	"format_position": formatPosition,
 }

@@ -119,3 +119,27 @@ func TestEventsOfThePage(t *testing.T) {
 		t.Errorf("states = %+v", got)
 	}
 }
+
+// From a mark to a search that can be laid: the page adds the event as it is.
+func TestProposeSearch(t *testing.T) {
+	s := newSession()
+	ask[any](t, s, "add_events", markEvent(t))
+	got := ask[struct{ Proposals []proposalOut }](t, s, "propose_search",
+		fmt.Sprintf(`{"now":%q,"speed_kn":6,"visibility_nm":10}`, t0.Add(10*time.Minute).Format(time.RFC3339)))
+	if len(got.Proposals) != 2 || len(got.Proposals[0].Body.Legs) < 5 || got.Proposals[0].Body.Reason == "" {
+		t.Fatalf("proposals = %+v", got)
+	}
+	laid, err := incident.New(incident.Event{
+		ID: "018f3c2e-0000-7000-8000-000000000002", Incident: "018f3c2e-7b1a-7c3d-9e4f-000000000001",
+		Device: "de000000-0000-4000-8000-000000000001", DeviceSeq: 2, At: t0.Add(10 * time.Minute), DeviceAt: t0.Add(10 * time.Minute),
+	}, incident.KindSearchLaid, got.Proposals[0].Body)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := laid.Validate(); err != nil {
+		t.Errorf("a proposal cannot be laid: %v", err)
+	}
+	if p := refused(t, s, "propose_search", fmt.Sprintf(`{"now":%q,"speed_kn":0}`, t0.Format(time.RFC3339))); !strings.Contains(p.Message, "speed") {
+		t.Errorf("no speed: %+v", p)
+	}
+}
