@@ -31,6 +31,7 @@ export async function phone(browser, options = {}) {
     hasTouch: true,
     isMobile: size !== "tablet",
     colorScheme,
+    serviceWorkers: options.worker === false ? "block" : "allow",
     ...(geolocation && { geolocation, permissions: ["geolocation"] }),
   });
   await context.addInitScript((p) => {

@@ -15,8 +15,8 @@ export class Stage {
   }
 
   /** Starts the stand-in server. */
-  async server(port) {
-    this.fake = new Fake();
+  async server(port, settings = {}) {
+    this.fake = Object.assign(new Fake(), settings);
     this.url = await this.fake.start(port);
     return this.fake;
   }
@@ -71,6 +71,11 @@ export class Phone {
     return this.page.waitForSelector(".lines, .return");
   }
 
+  /** Touches so soon after a mark are not taken; this is when they are again. */
+  settled() {
+    return this.page.evaluate(() => new Promise((ok) => setTimeout(ok, 700)));
+  }
+
   /** The engine answers. */
   async engine() {
     await this.page.waitForFunction(() => {
@@ -81,10 +86,10 @@ export class Phone {
 
   /** The page can open with no server. */
   async kept() {
-    await this.page.waitForFunction(async () => {
-      const files = ["/index.html", "/engine.wasm"];
-      const keys = (await Promise.all((await caches.keys()).map(async (n) => (await (await caches.open(n)).keys()).map((r) => new URL(r.url).pathname)))).flat();
-      return files.every((f) => keys.includes(f)) && navigator.serviceWorker.controller;
+    await this.holdsTrue("the page is kept", async () => {
+      const lists = (await caches.keys()).map(async (n) => (await (await caches.open(n)).keys()).map((r) => new URL(r.url).pathname));
+      const keys = (await Promise.all(lists)).flat();
+      return ["/index.html", "/engine.wasm"].every((f) => keys.includes(f)) && !!navigator.serviceWorker.controller;
     });
   }
 
@@ -122,6 +127,12 @@ export class Phone {
 
   returning(timeout = 10_000) {
     return this.page.waitForSelector(".return", { timeout });
+  }
+
+  /** Waits until a question that takes time in the page is answered with yes. */
+  async holdsTrue(what, question, ms = 10_000) {
+    const end = Date.now() + ms;
+    while (!(await this.page.evaluate(question))) assert(Date.now() < end, `waited ${ms} ms for: ${what}`);
   }
 
   text() {

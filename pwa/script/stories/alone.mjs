@@ -2,7 +2,6 @@
 
 import { assert, until } from "../stage.mjs";
 
-const settled = (p) => p.page.evaluate(() => new Promise((ok) => setTimeout(ok, 700)));
 
 export const stories = {
   "opened with no server and no network: mark, arrow, drift; then everything arrives once": async (s) => {
@@ -26,7 +25,7 @@ export const stories = {
     await a.says("only on this phone");
     await a.says("guidance from this phone");
     await a.page.waitForFunction(() => /0\.18 nm|330 m/.test(document.querySelector(".range").innerText));
-    await settled(a);
+    await a.settled();
     await a.tap("I SEE THEM");
     await a.holds("outbox", 2);
     const kept = await a.stored("outbox");
@@ -94,7 +93,7 @@ export const stories = {
     await a.mark();
     await a.returning();
     await a.says("1 refused by the server");
-    await settled(a);
+    await a.settled();
     await a.tap("More", ".touch");
     await a.tap("People and log");
     await a.says("told to refuse");
@@ -103,7 +102,7 @@ export const stories = {
 
   "reloaded in mid-incident: return at once, and a mark in the first moment joins it": async (s) => {
     const fake = await s.server();
-    const a = await s.phone();
+    const a = await s.phone({ worker: false });
     await a.whole();
     await a.mark();
     await a.returning();
@@ -131,8 +130,7 @@ export const stories = {
     const held = await a.holds("known", 1);
     await fake.stop();
     await a.says("alone since");
-    const other = await s.server(port);
-    other.epoch = "fake-2";
+    const other = await s.server(port, { epoch: "fake-2" });
     await until("the new store has the log", () => other.events.length === 1, 25_000);
     assert.equal(other.events[0].hash, held[0].hash);
     assert.equal(await a.page.locator(".return").count(), 1);
@@ -147,10 +145,10 @@ export const stories = {
     await a.mark();
     await a.returning();
     await a.page.evaluate(async () => (await navigator.serviceWorker.getRegistration()).update());
-    await a.page.waitForFunction(async () => !!(await navigator.serviceWorker.getRegistration()).waiting);
+    await a.holdsTrue("a new version waits", async () => !!(await navigator.serviceWorker.getRegistration()).waiting);
     assert.equal(await a.page.locator(".return").count(), 1);
     assert(!(await a.text()).includes("new version"));
-    await settled(a);
+    await a.settled();
     await a.tap("More", ".touch");
     await a.tap("Mark 1: not a person");
     await a.says("A new version is here");
@@ -158,6 +156,6 @@ export const stories = {
     await a.tap("A new version is here");
     await gone;
     await a.whole();
-    await a.page.waitForFunction(async () => !(await navigator.serviceWorker.getRegistration()).waiting);
+    await a.holdsTrue("it took over", async () => !(await navigator.serviceWorker.getRegistration()).waiting);
   },
 };

@@ -42,10 +42,10 @@ export const stories = {
     await until("the mark is stored", () => fake.events.length === 1);
     // Long, on the second person's touch: one more, not two, and the finger that lifts presses nothing else.
     await a.page.waitForSelector(".touch .second");
-    await settled(a);
+    await a.settled();
     await a.mark(".touch .second", 1500);
     await until("the second mark is stored", () => fake.events.length === 2);
-    await settled(a);
+    await a.settled();
     await a.holds("known", 2);
     assert.deepEqual(fake.events.map((e) => e.kind), ["marked", "marked"]);
   },
@@ -123,6 +123,7 @@ export const stories = {
     const apart = Date.parse(e.device_at) - Date.parse(e.at);
     assert(Math.abs(apart - 192_000) <= e.clock_error_ms + 1, `device and common time are ${apart} ms apart`);
     assert(e.clock_error_ms < 500);
+    await a.settled();
     await a.tap("More", ".touch");
     await a.tap("People and log");
     await a.says("phone's clock");
@@ -145,10 +146,6 @@ export const stories = {
   },
 };
 
-/** Until touches so soon after a mark are taken again. */
-async function settled(p) {
-  await p.page.evaluate(() => new Promise((ok) => setTimeout(ok, 700)));
-}
 
 /** The brightest pixel of the screen: its least colour (white has all), and the most blue. */
 async function brightestPixel(p) {

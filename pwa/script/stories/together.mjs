@@ -11,15 +11,13 @@ async function twoPhones(s) {
   return { fake, a, b };
 }
 
-/** Until touches so soon after a mark are taken again. */
-const settled = (p) => p.page.evaluate(() => new Promise((ok) => setTimeout(ok, 700)));
 
 export const stories = {
   "scenario 5: two phones mark, both are shown, the first is steered by until the choice is changed": async (s) => {
     const { fake, a, b } = await twoPhones(s);
     await a.mark();
     await b.returning();
-    await settled(b);
+    await b.settled();
     await b.tap("More", ".touch");
     await b.goes(54.101, 7.902);
     await b.page.locator("button[data-mark][data-person='1']").tap();
@@ -38,7 +36,7 @@ export const stories = {
     const { fake, a, b } = await twoPhones(s);
     await a.mark();
     await b.returning();
-    await settled(b);
+    await b.settled();
     await b.tap("More", ".touch");
     await b.tap("Mark 1: not a person");
     await a.page.waitForSelector(".lines");
@@ -52,7 +50,7 @@ export const stories = {
     const { fake, a, b } = await twoPhones(s);
     await a.mark();
     await b.returning();
-    await settled(a);
+    await a.settled();
     await a.tap("More", ".touch");
     await a.tap("I am in charge");
     await until("charge is taken", () => fake.events.length === 2);
@@ -60,8 +58,8 @@ export const stories = {
     await b.tap("More", ".touch");
     await b.says("In charge");
     await b.tap("Stand down", ".sheet");
-    await b.tap("Stand down", ".sheet > button");
-    await standDownInTwo(b);
+    await b.page.locator(".sheet > button:not(.hold)", { hasText: "Stand down" }).tap();
+    await b.tap("Yes, stand down");
     await until("the wish is stored", () => fake.events.length === 3);
     await a.says("asks to stand down");
     assert.equal(await a.page.locator(".ring").count(), 1);
@@ -76,7 +74,7 @@ export const stories = {
     const { fake, a } = await twoPhones(s);
     await a.mark();
     await a.returning();
-    await settled(a);
+    await a.settled();
     await a.tap("ALONGSIDE");
     await a.says("Alongside is not aboard");
     await a.tap("More", ".touch");
@@ -95,14 +93,14 @@ export const stories = {
     const { fake, a } = await twoPhones(s);
     await a.mark();
     await a.returning();
-    await settled(a);
+    await a.settled();
     await a.goes(54.102, 7.9);
     await a.mark(".touch .second");
     await a.says("Person 2");
     await until("both marks are stored", () => fake.events.length === 2);
     assert.equal(fake.events[1].body.person, 2);
     await a.says("Steering to person 2 of 2");
-    await settled(a);
+    await a.settled();
     await a.tap("Person 1");
     await a.says("Steering to person 1 of 2");
     await a.says("mark 1,");
@@ -118,7 +116,7 @@ export const stories = {
     const { fake, a, b } = await twoPhones(s);
     await a.mark();
     await b.returning();
-    await settled(a);
+    await a.settled();
     await a.tap("I SEE THEM");
     await b.says("LOST SIGHT");
     await a.tap("Undo: Seen");
@@ -142,7 +140,7 @@ export const stories = {
     await a.says("from the vessel");
     await a.mark();
     await a.returning();
-    await settled(a);
+    await a.settled();
     await a.tap("Fell earlier");
     await a.tap("30 s before the press");
     await until("the move is stored", () => fake.events.length === 2);
@@ -161,7 +159,7 @@ export const stories = {
     const { fake, a } = await twoPhones(s);
     await a.mark();
     await a.returning();
-    await settled(a);
+    await a.settled();
     await a.tap("Fell earlier");
     const where = a.page.locator(".field", { hasText: "At this position" });
     await where.locator("input").fill("somewhere north");
@@ -180,7 +178,7 @@ export const stories = {
     const { fake, a } = await twoPhones(s);
     await a.mark();
     await a.returning();
-    await settled(a);
+    await a.settled();
     await a.tap("More", ".touch");
     await a.tap("Stand down", ".sheet");
     const hold = a.page.locator(".hold");
@@ -195,8 +193,3 @@ export const stories = {
     await a.page.waitForSelector(".lines");
   },
 };
-
-/** The two-touch way, in the sheet that is open. */
-async function standDownInTwo(p) {
-  await p.page.locator(".sheet button", { hasText: "Yes, stand down" }).tap();
-}

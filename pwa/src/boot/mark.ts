@@ -49,6 +49,7 @@ const SETTLE_MS = 600;
 /** Listens for presses on every element that carries data-mark, now and later. */
 export function startMarking(outbox: Outbox): MarkButton {
   const filter = new PressFilter();
+  /** The press, and then the moment its finger lifted. */
   let lastPress = Number.NEGATIVE_INFINITY;
 
   const button: MarkButton = {
@@ -78,9 +79,13 @@ export function startMarking(outbox: Outbox): MarkButton {
     },
     { capture: true, passive: true },
   );
-  const ended = (e: PointerEvent) => filter.end(e.pointerId, e.timeStamp);
+  const ended = (e: PointerEvent) => {
+    if (filter.end(e.pointerId, e.timeStamp)) lastPress = performance.now();
+  };
   document.addEventListener("pointerup", ended, { capture: true, passive: true });
   document.addEventListener("pointercancel", ended, { capture: true, passive: true });
+  // A long press is a press, not a wish for the browser's menu.
+  document.addEventListener("contextmenu", (e) => markTarget(e) && e.preventDefault(), { capture: true });
   document.addEventListener("click", (e) => clicked(e, button), { capture: true });
   return button;
 }

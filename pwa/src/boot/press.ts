@@ -21,11 +21,12 @@ export class PressFilter {
     return true;
   }
 
-  /** A contact ended, anywhere. */
-  end(pointer: number, atMs: number): void {
-    if (this.down?.pointer !== pointer) return;
+  /** A contact ended, anywhere. Returns true when it was the one that pressed. */
+  end(pointer: number, atMs: number): boolean {
+    if (this.down?.pointer !== pointer) return false;
     this.down = null;
     this.lastContact = atMs;
+    return true;
   }
 
   /** Whether the pressing finger is still on the glass. */

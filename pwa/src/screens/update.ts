@@ -14,6 +14,7 @@ export async function keepOffline(): Promise<void> {
   } catch {
     return; // The readiness line says that the page is not kept.
   }
+  if (!registration) return;
   const look = () => {
     m.offline.value = !!registration?.active;
     m.updateWaiting.value = !!registration?.waiting && !!navigator.serviceWorker.controller;

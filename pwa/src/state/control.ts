@@ -249,9 +249,11 @@ function heard(message: Message): void {
 
 async function hello(h: { epoch: string; last_seq: number; server_time: string }): Promise<void> {
   if (epoch && h.epoch !== epoch) {
-    // Another store: everything this phone holds goes to it, and its log is read from the start.
+    // Another store: all that this phone wrote goes to it, and its log is read from the start.
     lastSeq = 0;
     await control.outbox.setMeta("last_seq", 0);
+    await control.outbox.sendAllAgain();
+    void control.sender.send();
   }
   epoch = h.epoch;
   await control.outbox.setMeta("epoch", epoch);

@@ -164,6 +164,20 @@ export class Outbox {
     this.onChange();
   }
 
+  /** Another store is on the server: everything this device ever wrote has to go there again. */
+  async sendAllAgain(): Promise<void> {
+    const device = await this.device();
+    await this.onDisk(async (db) => {
+      const tx = db.transaction(["known", "outbox", "refused"], "readwrite");
+      for (const e of await tx.objectStore("known").getAll()) {
+        if (e.device === device) tx.objectStore("outbox").put(e);
+      }
+      tx.objectStore("refused").clear();
+      await tx.done;
+    }, undefined);
+    this.onChange();
+  }
+
   /** The server will not take this one: it stays here, and is shown with the reason. */
   async refuse(id: string, reason: string): Promise<void> {
     await this.onDisk((db) => db.put("refused", { id, reason }), "");
