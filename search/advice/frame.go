@@ -26,6 +26,11 @@ type Frame struct {
 	Mark  nav.Opt[MarkSeen] `json:"mark"`
 	Fix   nav.Opt[FixSeen]  `json:"fix"`
 	Datum nav.Opt[Datum]    `json:"datum"`
+	// Corridor takes the place of the datum for a person who was not seen to
+	// fall: a stretch of track, drifted, never one point.
+	Corridor []CorridorPoint `json:"corridor,omitempty"`
+	// DriftNote says why there is no datum, when it could not be worked out.
+	DriftNote string `json:"drift_note,omitempty"`
 
 	HeadingDeg    nav.Opt[nav.TrueDeg] `json:"heading_deg"`
 	HeadingSource string               `json:"heading_source,omitempty"` // "compass" or "course"
@@ -90,9 +95,13 @@ type FixSeen struct {
 // Datum is where to look now: it moves.
 type Datum struct {
 	Position nav.Position `json:"position"`
-	// ErrorM is the radius that holds the person in 95 of 100 cases, as far as
-	// the inputs are right.
-	ErrorM         float64               `json:"error_m"`
+	// ErrorM is the radius around Position that holds the person in 95 of 100
+	// cases, as far as the inputs are right; it reaches around the left and the
+	// right datum too, where leeway diverges.
+	ErrorM float64 `json:"error_m"`
+	// ProbableErrorM is the total probable error of the manuals: half of all
+	// cases, around each of the datums.
+	ProbableErrorM float64               `json:"probable_error_m"`
 	AgeS           float64               `json:"age_s"` // since the position it starts from
 	MovedM         float64               `json:"moved_m"`
 	MovedTowards   nav.Opt[nav.TrueDeg]  `json:"moved_towards_deg"`
@@ -109,7 +118,7 @@ type Datum struct {
 	CurrentDriftKn nav.Opt[float64]      `json:"current_drift_kn"`
 	CurrentAt      nav.Opt[time.Time]    `json:"current_at"`
 	CurrentBy      string                `json:"current_by,omitempty"`
-	// Basis says what the datum starts from: "mark", "beacon" or "sighting".
+	// Basis says what the datum starts from: "mark" or "beacon".
 	Basis string `json:"basis"`
 
 	// beyondTrials: the wind is stronger than the leeway was measured in.

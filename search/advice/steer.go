@@ -91,7 +91,8 @@ func (f *Frame) aim(in Input, p incident.PersonState) {
 	if m, ok := workingMark(in.State, p); ok {
 		f.Mark = nav.Some(seenMark(m))
 	}
-	f.Datum = datumOf(in, p)
+	where := driftedOf(in, p)
+	f.Datum, f.Corridor, f.DriftNote = where.datum, where.corridor, where.note
 	d, okDatum := f.Datum.Get()
 	fix, okFix := f.present(in)
 	if !okDatum || !okFix {
@@ -165,7 +166,7 @@ func (f *Frame) line(in Input, p incident.PersonState) PersonLine {
 		ElapsedS: elapsed(in, p), InSight: p.InSight,
 	}
 	fix, okFix := f.present(in)
-	d, okDatum := datumOf(in, p).Get()
+	d, okDatum := driftedOf(in, p).datum.Get()
 	if okFix && okDatum && p.Status != incident.IsAboard {
 		line := nav.Inverse(fix.Position, d.Position)
 		l.RangeM, l.Bearing = nav.Some(line.RangeM), line.Bearing
