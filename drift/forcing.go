@@ -57,7 +57,7 @@ func (c Case) drivenStretches(from, to time.Time, alone bool) []stretch {
 	for i, p := range pieces {
 		v, sd := weather.WindDriven(p.Velocity, lat)
 		if !alone {
-			sd = math.Sqrt(math.Max(sd*sd-weather.ModelCurrentSDMs*weather.ModelCurrentSDMs, 0))
+			sd = ownSD(sd)
 		}
 		pieces[i].Velocity, pieces[i].SDMs = v, sd
 	}
@@ -87,24 +87,52 @@ type forcing struct {
 
 // forcingAt is the forcing at a moment, by the same rules as the stretches.
 func (c Case) forcingAt(at time.Time) forcing {
+	return c.forcingOf(c.Winds.At(at), c.Currents.At(at), c.plane().Origin().LatDeg())
+}
+
+// forcingOver is the mean forcing of a time of minutes at a latitude.
+func (c Case) forcingOver(from, to time.Time, latDeg float64) forcing {
+	return c.forcingOf(over(c.Winds, from, to), over(c.Currents, from, to), latDeg)
+}
+
+// over is the value in the middle of a time, with the mean velocity where one
+// sample takes over from another in between.
+func over(h weather.History, from, to time.Time) nav.Opt[weather.Value] {
+	v, ok := h.At(from.Add(to.Sub(from) / 2)).Get()
+	if !ok {
+		return nav.None[weather.Value]()
+	}
+	a, b := h.At(from).Or(v), h.At(to).Or(v)
+	if v.Between || !a.Sample.From.Equal(b.Sample.From) || a.Velocity != b.Velocity {
+		v.Velocity = h.Mean(from, to).Or(weather.Average{Velocity: v.Velocity}).Velocity
+	}
+	return nav.Some(v)
+}
+
+func (c Case) forcingOf(windNow, currentNow nav.Opt[weather.Value], latDeg float64) forcing {
 	f := forcing{windSD: unknownWindSDMs, currentSD: weather.ModelCurrentSDMs}
-	wind, windKnown := c.Winds.At(at).Get()
+	wind, windKnown := windNow.Get()
 	if windKnown {
 		f.wind, f.windSD = wind.Velocity, wind.SDMs
 	}
-	current, currentKnown := c.Currents.At(at).Get()
+	current, currentKnown := currentNow.Get()
 	if currentKnown {
 		f.current, f.currentSD = current.Velocity, current.SDMs
 	}
-	if c.WindDriven && windKnown && (!currentKnown || current.Sample.Source == weather.Tables) {
-		v, sd := weather.WindDriven(wind.Velocity, c.plane().Origin().LatDeg())
-		if currentKnown {
-			sd = math.Sqrt(math.Max(sd*sd-weather.ModelCurrentSDMs*weather.ModelCurrentSDMs, 0))
-			f.currentSD = math.Hypot(f.currentSD, sd)
-		} else {
-			f.currentSD = sd
-		}
-		f.current = f.current.Add(v)
+	if !c.WindDriven || !windKnown || currentKnown && current.Sample.Source != weather.Tables {
+		return f
 	}
+	v, sd := weather.WindDriven(wind.Velocity, latDeg)
+	f.current = f.current.Add(v)
+	if currentKnown {
+		sd = math.Hypot(f.currentSD, ownSD(sd))
+	}
+	f.currentSD = sd
 	return f
+}
+
+// ownSD is what the rule for the wind-driven current is in doubt by, without
+// the doubt about a current nobody observed.
+func ownSD(sd float64) float64 {
+	return math.Sqrt(math.Max(sd*sd-weather.ModelCurrentSDMs*weather.ModelCurrentSDMs, 0))
 }
