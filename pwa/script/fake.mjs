@@ -48,7 +48,7 @@ export class Fake {
     await new Promise((done) => this.#http.listen(port, "127.0.0.1", done));
     this.port = this.#http.address().port;
     this.#timer = setInterval(() => {
-      if (this.ticking) this.send({ t: "tick", server_time: this.#now(), clients: this.#ws.clients.size });
+      if (this.ticking) this.send({ t: "tick", at: this.#now(), seq: this.events.length, clients: this.clients });
     }, 1000);
     return `http://localhost:${this.port}/`;
   }
@@ -79,19 +79,25 @@ export class Fake {
     return kept;
   }
 
+  #ms() {
+    return Date.now() + this.clockAheadMs;
+  }
+
   #now() {
-    return new Date(Date.now() + this.clockAheadMs).toISOString();
+    return new Date(this.#ms()).toISOString();
   }
 
   #joined(socket, req) {
     const after = Number(new URL(req.url, "http://x").searchParams.get("after") ?? 0);
     const say = (m) => socket.send(JSON.stringify(m));
-    say({ t: "hello", epoch: this.epoch, last_seq: this.events.length, server_time: this.#now() });
-    for (const e of this.events.filter((e) => e.seq > after)) say({ t: "event", event: e });
+    const reset = req.url.includes("epoch=") && !req.url.includes(`epoch=${this.epoch}`);
+    const from = reset ? 0 : after;
+    say({ t: "hello", protocol: 1, epoch: this.epoch, last_seq: this.events.length, server_time: this.#now(), after: from, reset });
+    for (const e of this.events.filter((e) => e.seq > from)) say({ t: "event", event: e });
     if (this.fix) say(this.fix);
     socket.on("message", (data) => {
       const m = JSON.parse(String(data));
-      if (m.t === "time") say({ t: "time", device_ms: m.device_ms, server_time: this.#now() });
+      if (m.t === "time") say({ t: "time", client_ms: m.client_ms, received_ms: this.#ms(), server_ms: this.#ms() });
     });
   }
 

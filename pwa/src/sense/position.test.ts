@@ -6,7 +6,7 @@ const MONO = 50_000;
 
 function fix(age_s: number, over: Partial<HeldFix> = {}): HeldFix {
   return {
-    position: { lat: 54.1, lon: 7.9 }, error_m: 8, sog_kn: 6, cog_deg: 283, heading_deg: null,
+    position: { lat: 54.1, lon: 7.9 }, error_m: 8, sog_kn: 6, cog_deg: 283, heading_deg: null, reckoned: false,
     taken_ms: NOW - age_s * 1000, taken_mono_ms: MONO - age_s * 1000, ...over,
   };
 }
@@ -23,6 +23,10 @@ describe("markedFrom", () => {
 
   test("of two old ones the younger is kept, with its age (scenario 8)", () => {
     expect(markedFrom(fix(95), fix(300), NOW, MONO)).toMatchObject({ source: "vessel", fix_age_s: 95, sog_kn: 6 });
+  });
+
+  test("a position carried on by course and speed says so", () => {
+    expect(markedFrom(fix(8, { reckoned: true }), null, NOW, MONO)).toMatchObject({ source: "dr", fix_age_s: 8 });
   });
 
   test("no fix at all is marked all the same (scenario 9)", () => {

@@ -11,6 +11,8 @@ export interface HeldFix {
   sog_kn: number | null;
   cog_deg: number | null;
   heading_deg: number | null;
+  /** Carried on by course and speed: the age is that of the fix it started from. */
+  reckoned: boolean;
   /** When the receiver took it, Unix milliseconds on this device's clock. */
   taken_ms: number;
   /** performance.now() at the same moment. */
@@ -72,6 +74,7 @@ function took(p: GeolocationPosition): void {
     sog_kn: scaled(c.speed, KN_PER_MS),
     cog_deg: c.speed !== null && c.speed > 0 ? finite(c.heading) : null,
     heading_deg: null,
+    reckoned: false,
     taken_ms: taken,
     taken_mono_ms: performance.now() - (now - taken),
   };
@@ -121,7 +124,7 @@ export function markedFrom(
 function body(fix: HeldFix, source: "vessel" | "phone", age: number): Marked {
   return {
     position: fix.position,
-    source,
+    source: fix.reckoned ? "dr" : source,
     ...(fix.error_m !== null && { error_m: round(fix.error_m, 1) }),
     fix_age_s: round(age, 3),
     ...(fix.sog_kn !== null && { sog_kn: round(fix.sog_kn, 2) }),

@@ -75,6 +75,7 @@ export function startControl(outbox: Outbox, mark: MarkButton): Control {
 async function begin(outbox: Outbox, engine: Engine, sender: Sender, stream: Stream): Promise<void> {
   m.device.value = await outbox.device();
   await outbox.mend();
+  await outbox.forgetRefusals();
   for (const e of await outbox.all()) events.set(e.id, e);
   lastSeq = (await outbox.meta<number>("last_seq")) ?? 0;
   epoch = (await outbox.meta<string>("epoch")) ?? "";
@@ -220,7 +221,7 @@ let askedMs = 0;
 /** Asks the server's time: what makes the phones' clocks one. */
 function askTime(): void {
   askedMs = Date.now();
-  control.stream.send({ t: "time", device_ms: askedMs });
+  control.stream.send({ t: "time", client_ms: askedMs });
 }
 
 function heard(message: Message): void {
@@ -244,10 +245,15 @@ function heard(message: Message): void {
     case "time":
       gotTime(message);
       break;
+    case "problem":
+      gotProblem(message);
+      break;
   }
 }
 
-async function hello(h: { epoch: string; last_seq: number; server_time: string }): Promise<void> {
+async function hello(h: { epoch: string; after?: number; reset?: boolean }): Promise<void> {
+  m.link.value = { ...m.link.value, warning: "" };
+  if (h.reset && h.after !== undefined) lastSeq = h.after;
   if (epoch && h.epoch !== epoch) {
     // Another store: all that this phone wrote goes to it, and its log is read from the start.
     lastSeq = 0;
@@ -301,19 +307,19 @@ function allHands(e: LogEvent): void {
 }
 
 function gotFix(f: Record<string, unknown>): void {
-  const from = (f.fix ?? f) as Record<string, unknown>;
-  const position = from.position as Position | undefined | null;
-  if (!position) return;
+  const position = f.position as Position | undefined | null;
+  if (!position) return; // the last one stays, and grows older
   const num = (x: unknown): number | null => (typeof x === "number" ? x : null);
   place.tookVessel(
     {
       position,
-      error_m: num(from.error_m),
-      sog_kn: num(from.sog_kn),
-      cog_deg: num(from.cog_deg),
-      heading_deg: num(from.heading_deg ?? f.heading_deg),
+      error_m: num(f.error_m),
+      sog_kn: num(f.sog_kn),
+      cog_deg: num(f.cog_deg),
+      heading_deg: num(f.heading_deg),
+      reckoned: f.source === "dr",
     },
-    num(from.age_s) ?? 0,
+    num(f.age_s) ?? 0,
   );
 }
 
@@ -329,8 +335,15 @@ function gotTick(tick: Record<string, unknown>): void {
 }
 
 function gotTime(answer: Record<string, unknown>): void {
-  const server = typeof answer.server_time === "string" ? Date.parse(answer.server_time) : Number(answer.server_ms);
-  measured(askedMs, Date.now(), server);
+  const [t1, t2, t3] = [answer.client_ms, answer.received_ms, answer.server_ms].map(Number) as [number, number, number];
+  measured({ t1, t2, t3, t4: Date.now() });
+}
+
+/** What the server says of itself that everyone should know, until it says that it is over. */
+function gotProblem(p: { title?: string; over?: boolean; of?: unknown }): void {
+  if (p.of) return;
+  m.link.value = { ...m.link.value, warning: p.over ? "" : (p.title ?? "") };
+  if (p.over) void control.sender.send();
 }
 
 // --- position ---
@@ -362,7 +375,7 @@ function tellEngine(fix: place.HeldFix | null, source: "vessel" | "phone"): void
   const at = iso(common(fix.taken_ms));
   const own = { at, position: fix.position, sog_kn: fix.sog_kn, cog_deg: fix.cog_deg, error_m: fix.error_m };
   const heading = fix.heading_deg === null ? {} : { heading_deg: fix.heading_deg, heading_at: at };
-  void control.engine.call("own", { source, fix: own, ...heading }).catch(() => {});
+  void control.engine.call("own", { source: fix.reckoned ? "dr" : source, fix: own, ...heading }).catch(() => {});
 }
 
 // --- every second ---

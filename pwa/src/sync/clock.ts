@@ -12,6 +12,11 @@ interface Offset {
 
 let known: Offset | null = read();
 
+/** Forgets the offset, as for a test. */
+export function forgetClock(): void {
+  known = null;
+}
+
 function read(): Offset | null {
   try {
     const o = JSON.parse(localStorage.getItem(KEY) ?? "null") as Offset | null;
@@ -36,18 +41,30 @@ export function commonNow(): number {
   return common(Date.now());
 }
 
-/**
- * Takes in one exchange with the server: sent and received on this device's
- * clock, the server's time in between. A better one (shorter round trip)
- * replaces a worse; one that disagrees by more than both errors replaces it
- * too, because then a clock was changed.
- */
-export function measured(sentMs: number, receivedMs: number, serverMs: number): void {
-  if (receivedMs < sentMs || !Number.isFinite(serverMs)) return;
-  const next = {
-    offset_ms: Math.round(serverMs - (sentMs + receivedMs) / 2),
-    error_ms: Math.ceil((receivedMs - sentMs) / 2) + 1,
+/** One question for the time: t1 and t4 on this device's clock, t2 and t3 on the server's (RFC 5905, section 8). */
+export interface Exchange {
+  t1: number;
+  t2: number;
+  t3: number;
+  t4: number;
+}
+
+/** Offset and error of an exchange; one more millisecond for the rounding at both ends. */
+export function offsetOf({ t1, t2, t3, t4 }: Exchange): Offset {
+  return {
+    offset_ms: Math.round((t2 - t1 + (t3 - t4)) / 2),
+    error_ms: Math.ceil((t4 - t1 - (t3 - t2)) / 2) + 1,
   };
+}
+
+/**
+ * Takes in one exchange. A better one (shorter round trip) replaces a worse;
+ * one that disagrees by more than both errors replaces it too, because then a
+ * clock was changed.
+ */
+export function measured(exchange: Exchange): void {
+  const next = offsetOf(exchange);
+  if (!Number.isFinite(next.offset_ms) || next.error_ms < 0) return;
   const apart = known ? Math.abs(next.offset_ms - known.offset_ms) : 0;
   if (known && next.error_ms > known.error_ms && apart <= next.error_ms + known.error_ms) return;
   known = next;

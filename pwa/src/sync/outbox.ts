@@ -184,6 +184,11 @@ export class Outbox {
     this.onChange();
   }
 
+  /** Gives refused events another chance: a role or a version may have changed since. */
+  async forgetRefusals(): Promise<void> {
+    await this.onDisk((db) => db.clear("refused"), undefined);
+  }
+
   /** Why events were refused. */
   async refusals(): Promise<{ id: string; reason: string }[]> {
     return this.onDisk((db) => db.getAll("refused"), []);

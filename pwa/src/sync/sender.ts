@@ -92,7 +92,7 @@ export class Sender {
       await this.outbox.acknowledged(events.map((e) => e.id));
       return "done";
     }
-    if (response.status === 401 || response.status === 403) return "unpaired";
+    if (response.status === 401) return "unpaired";
     if (response.status === 408 || response.status === 429 || response.status >= 500) return "server_error";
     return this.refused(events, response);
   }

@@ -185,11 +185,11 @@ export interface State {
 
 /** A message of the stream, as far as the page reads it. */
 export type Message =
-  | ({ t: "hello"; epoch: string; last_seq: number; server_time: string } & Record<string, unknown>)
+  | { t: "hello"; epoch: string; last_seq: number; after?: number; reset?: boolean }
   | { t: "event"; event: LogEvent }
   | ({ t: "fix" } & Record<string, unknown>)
   | ({ t: "steer" } & Record<string, unknown>)
   | ({ t: "tick" } & Record<string, unknown>)
   | ({ t: "time" } & Record<string, unknown>)
   | ({ t: "ack" } & Record<string, unknown>)
-  | ({ t: "problem" } & Record<string, unknown>);
+  | { t: "problem"; code: string; title?: string; over?: boolean; of?: string[] };
