@@ -1,0 +1,91 @@
+package drift
+
+import (
+	"math"
+	"testing"
+)
+
+// The normal numbers are drawn from straight lines through exact quantiles. All
+// 2^31 halves of the table are too many to add up; each cell's moments follow
+// from its line: with z even over [a, b], E z² = (a² + ab + b²)/3.
+func TestNormalMoments(t *testing.T) {
+	table := normals()
+	var mass, second, fourth float64
+	for i := range table {
+		lo := math.Float64frombits(uint64(firstCell+i) << shift)
+		hi := math.Float64frombits(uint64(firstCell+i+1) << shift)
+		a, b := table[i].c0+table[i].c1*lo, table[i].c0+table[i].c1*hi
+		p := (hi - lo) * 0x1p-32 // both halves
+		mass += p
+		second += p * (a*a + a*b + b*b) / 3
+		fourth += p * (a*a*a*a + a*a*a*b + a*a*b*b + a*b*b*b + b*b*b*b) / 5
+	}
+	// The cells begin at w = 1 of 2^32: the rest is 2.3e-10.
+	if math.Abs(mass-1) > 1e-9 {
+		t.Errorf("mass = %v, want 1", mass)
+	}
+	if math.Abs(second-1) > 1e-5 {
+		t.Errorf("variance = %v, want 1", second)
+	}
+	if math.Abs(fourth-3) > 1e-3 {
+		t.Errorf("fourth moment = %v, want 3", fourth)
+	}
+}
+
+// Quantiles of the normal distribution from a table (NIST/SEMATECH e-Handbook,
+// section 1.3.6.7.1: 0.97500 at 1.96, 0.99865 at 3.00, 0.50000 at 0), to the five
+// figures printed there.
+func TestNormalQuantiles(t *testing.T) {
+	table := normals()
+	for _, c := range []struct{ z, cumulative float64 }{{0, 0.5}, {0.5, 0.69146}, {1, 0.84134}, {1.96, 0.97500}, {3, 0.99865}} {
+		u := uint32((1 - c.cumulative) * (1 << 32)) // w = 2^33 (1 - cumulative)
+		got := table.normal(min(u, math.MaxInt32))
+		density := math.Exp(-c.z*c.z/2) / math.Sqrt(2*math.Pi)
+		if tol := 0.5e-5/density + 1e-5; math.Abs(got-c.z) > tol {
+			t.Errorf("normal at %v = %v, want %v ± %v", c.cumulative, got, c.z, tol)
+		}
+	}
+	if up, down := table.normal(12345), table.normal(12345|1<<31); up != -down {
+		t.Errorf("the halves differ: %v, %v", up, down)
+	}
+	for _, u := range []uint32{0, 1, math.MaxInt32, math.MaxInt32 + 1, math.MaxUint32} {
+		if z := table.normal(u); !(math.Abs(z) < 6.5) {
+			t.Errorf("normal(%#x) = %v", u, z)
+		}
+	}
+}
+
+// SplitMix64's first numbers from seed 1234567 (the reference program by
+// Vigna, prng.di.unimi.it/splitmix64.c; values as widely published).
+func TestSplitMix64(t *testing.T) {
+	s := stream{1234567}
+	for i, want := range []uint64{6457827717110365317, 3203168211198807973, 9817491932198370423} {
+		if got := s.next(); got != want {
+			t.Errorf("number %d = %d, want %d", i, got, want)
+		}
+	}
+}
+
+// Streams of neighbouring members and seeds must not go together.
+func TestStreamsAreApart(t *testing.T) {
+	table := normals()
+	const n, lag = 20000, 3
+	draw := func(seed uint64, member int) []float64 {
+		s := stream{mix64(mix64(seed^stafford) + uint64(member)*golden)}
+		out := make([]float64, n)
+		for i := range out {
+			out[i] = s.normal(table)
+		}
+		return out
+	}
+	for _, c := range [][2][]float64{{draw(1, 0), draw(1, 1)}, {draw(1, 0), draw(2, 0)}, {draw(7, 9), draw(7, 9)[lag:]}} {
+		sum := 0.0
+		for i := range c[1] {
+			sum += c[0][i] * c[1][i]
+		}
+		// Five standard deviations of a correlation that is not there.
+		if r := sum / n; math.Abs(r) > 5/math.Sqrt(n) {
+			t.Errorf("correlation %v", r)
+		}
+	}
+}
