@@ -102,14 +102,24 @@ func (h History) At(at time.Time) nav.Opt[Value] {
 	}
 	o, g := lastAt(h.obs, at), lastAt(h.guide, at)
 	switch {
-	case g < 0 && len(h.obs) > 0, o >= 0 && h.outranks(h.obs[o], g, at):
-		return nav.Some(h.held(h.obs[max(o, 0)], at))
-	case o < 0 && len(h.obs) > 0 && h.obs[0].From.Sub(at) <= h.medium.Reach():
+	case o >= 0 && (g < 0 || h.outranks(h.obs[o], g, at)):
+		return nav.Some(h.held(h.obs[o], at))
+	case o < 0 && h.firstReaches(at):
 		return nav.Some(h.held(h.obs[0], at))
 	case g < 0:
 		return nav.Some(h.held(h.guide[0], at))
 	}
 	return nav.Some(h.guideAt(g, at))
+}
+
+// firstReaches reports whether at, before all observations, is the first one's:
+// within its reach, or when the guide begins no earlier than it.
+func (h History) firstReaches(at time.Time) bool {
+	if len(h.obs) == 0 {
+		return false
+	}
+	first := h.obs[0].From
+	return len(h.guide) == 0 || !h.guide[0].From.Before(first) || first.Sub(at) <= h.medium.Reach()
 }
 
 // outranks reports whether an observation made before at counts more than the
