@@ -91,9 +91,8 @@ const (
 )
 
 // Variation works out the magnetic field at p, altM metres above the WGS 84
-// ellipsoid (0 will do at sea: 100 m of height change variation by less than
-// 0.001 degree outside the caution zone), at a time from 2025.0 up to but not
-// including 2030.0. At a pole, directions are those of the longitude given.
+// ellipsoid (0 will do at sea), at a time from 2025.0 up to but not including
+// 2030.0. At a pole, directions are those of the longitude given.
 //
 // Errors: [*OutsideValidityError] for another date, one that wraps
 // [nav.ErrPosition] for what is no position, and one for a height that is not
