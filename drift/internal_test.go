@@ -12,8 +12,8 @@ func TestNormalMoments(t *testing.T) {
 	table := normals()
 	var mass, second, fourth float64
 	for i := range table {
-		lo := math.Float64frombits(uint64(firstCell+i) << shift)
-		hi := math.Float64frombits(uint64(firstCell+i+1) << shift)
+		lo := math.Float64frombits(uint64(firstCell+i) << cellShift)
+		hi := math.Float64frombits(uint64(firstCell+i+1) << cellShift)
 		a, b := table[i].c0+table[i].c1*lo, table[i].c0+table[i].c1*hi
 		p := (hi - lo) * 0x1p-32 // both halves
 		mass += p

@@ -50,7 +50,7 @@ func (s *stream) normal(t *normalTable) float64 { return t.normal(uint32(s.next(
 const (
 	segmentBits = 6
 	mantissa    = 52
-	shift       = mantissa - segmentBits
+	cellShift   = mantissa - segmentBits
 	octaves     = 32
 	firstCell   = 1023 << segmentBits // the cell of 1.0
 )
@@ -63,7 +63,7 @@ type normalTable [octaves << segmentBits]struct{ c0, c1 float64 }
 func (t *normalTable) normal(u uint32) float64 {
 	w := float64(u<<1 | 1)
 	b := math.Float64bits(w)
-	cell := &t[(b>>shift-firstCell)&(octaves<<segmentBits-1)]
+	cell := &t[(b>>cellShift-firstCell)&(octaves<<segmentBits-1)]
 	z := cell.c0 + cell.c1*w
 	return math.Float64frombits(math.Float64bits(z) | uint64(u>>31)<<63)
 }
@@ -71,8 +71,8 @@ func (t *normalTable) normal(u uint32) float64 {
 var normals = sync.OnceValue(func() *normalTable {
 	t := new(normalTable)
 	for i := range t {
-		lo := math.Float64frombits(uint64(firstCell+i) << shift)
-		hi := math.Float64frombits(uint64(firstCell+i+1) << shift)
+		lo := math.Float64frombits(uint64(firstCell+i) << cellShift)
+		hi := math.Float64frombits(uint64(firstCell+i+1) << cellShift)
 		z0, z1 := quantile(lo), quantile(hi)
 		t[i].c1 = (z1 - z0) / (hi - lo)
 		t[i].c0 = z0 - t[i].c1*lo
