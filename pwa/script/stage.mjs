@@ -139,6 +139,27 @@ export class Phone {
     return this.page.evaluate(() => document.body.innerText);
   }
 
+  /** The brightest pixel of the screen: its least colour (white has all), and the most blue. */
+  async brightestPixel() {
+    const png = (await this.page.screenshot()).toString("base64");
+    return this.page.evaluate(async (data) => {
+      const image = new Image();
+      image.src = `data:image/png;base64,${data}`;
+      await image.decode();
+      const canvas = new OffscreenCanvas(image.width, image.height);
+      const c = canvas.getContext("2d");
+      c.drawImage(image, 0, 0);
+      const d = c.getImageData(0, 0, image.width, image.height).data;
+      let least = 0;
+      let blue = 0;
+      for (let i = 0; i < d.length; i += 4) {
+        least = Math.max(least, Math.min(d[i], d[i + 1], d[i + 2]));
+        blue = Math.max(blue, d[i + 2]);
+      }
+      return { least, blue };
+    }, png);
+  }
+
   /** What lies in a store of the phone's database. */
   stored(store) {
     return this.page.evaluate(

@@ -9,7 +9,7 @@ export const stories = {
     const b = await s.phone({ palette: "night" });
     await Promise.all([a.whole(), b.whole()]);
     await until("both phones are connected", () => fake.clients === 2);
-    const brightest = [await brightestPixel(a)];
+    const brightest = [await a.brightestPixel()];
     const before = Date.now();
     // A drop of water lies on the glass elsewhere while the thumb lands.
     const cdp = await a.cdp();
@@ -22,7 +22,7 @@ export const stories = {
     await cdp.send("Input.dispatchTouchEvent", { type: "touchEnd", touchPoints: [drop] });
     await cdp.send("Input.dispatchTouchEvent", { type: "touchEnd", touchPoints: [] });
     await a.returning(2000);
-    brightest.push(await brightestPixel(a));
+    brightest.push(await a.brightestPixel());
     await b.returning(2000);
     const shownMs = Date.now() - pressed;
     assert(shownMs < 2000, `the other phone showed it after ${shownMs} ms`);
@@ -145,25 +145,3 @@ export const stories = {
     assert.equal(await a.page.locator(".return").count(), 0);
   },
 };
-
-
-/** The brightest pixel of the screen: its least colour (white has all), and the most blue. */
-async function brightestPixel(p) {
-  const png = (await p.page.screenshot()).toString("base64");
-  return p.page.evaluate(async (data) => {
-    const image = new Image();
-    image.src = `data:image/png;base64,${data}`;
-    await image.decode();
-    const canvas = new OffscreenCanvas(image.width, image.height);
-    const c = canvas.getContext("2d");
-    c.drawImage(image, 0, 0);
-    const d = c.getImageData(0, 0, image.width, image.height).data;
-    let least = 0;
-    let blue = 0;
-    for (let i = 0; i < d.length; i += 4) {
-      least = Math.max(least, Math.min(d[i], d[i + 1], d[i + 2]));
-      blue = Math.max(blue, d[i + 2]);
-    }
-    return { least, blue };
-  }, png);
-}

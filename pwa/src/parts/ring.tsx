@@ -5,7 +5,7 @@
 
 import type { RingView } from "./ring_view";
 
-/** Radius of the rim in drawing units; the drawing is 240 wide. */
+/** Radius of the rim in drawing units; the drawing is 226 wide. */
 const R = 100;
 
 interface Props {
@@ -16,7 +16,7 @@ interface Props {
 export function Ring({ view, words }: Props) {
   const scale = R / view.radiusM;
   return (
-    <svg class={view.stale ? "ring stale" : "ring"} viewBox="-120 -120 240 240" role="img" aria-label={view.text}>
+    <svg class={view.stale ? "ring stale" : "ring"} viewBox="-113 -113 226 226" role="img" aria-label={view.text}>
       <defs>
         <pattern id="hatch" width="7" height="7" patternUnits="userSpaceOnUse" patternTransform="rotate(45)">
           <rect class="hatch-line" width="3" height="7" />
@@ -61,12 +61,14 @@ function Ticks({ northDeg, word }: { northDeg: number; word: string }) {
 /** A small mark on the rim: wind blows in from it, drift goes out to it. */
 function RimMark({ deg, kind, word }: { deg: number; kind: "wind" | "drift"; word: string }) {
   const label = xy(deg, R + 12);
+  // Beside the mark, never under it.
+  const anchor = label.x > 30 ? "start" : label.x < -30 ? "end" : "middle";
   // Pointing inward for what comes, outward for what goes.
   const d = kind === "wind" ? `M-6 ${-R - 7} L6 ${-R - 7} L0 ${-R + 5} Z` : `M-6 ${-R + 3} L6 ${-R + 3} L0 ${-R - 8} Z`;
   return (
     <g class={`rim-mark ${kind}`}>
       <path d={d} transform={`rotate(${deg})`} />
-      <text x={label.x} y={label.y} dy="0.35em">{word}</text>
+      <text x={label.x} y={label.y} dy="0.35em" style={{ textAnchor: anchor }}>{word}</text>
     </g>
   );
 }

@@ -37,7 +37,8 @@ export function Ready() {
         <button type="button" class="small" onClick={() => (m.sheet.value = "log")}>{t("ready.log")}</button>
         <button type="button" class="small" onClick={() => (m.sheet.value = "setup")}>{t("ready.more")}</button>
       </header>
-      <div class="ready-lines">
+      {/* biome-ignore lint/a11y/noNoninteractiveTabindex: it may scroll, and then a keyboard has to reach it */}
+      <section class="ready-lines" tabIndex={0} aria-label={t("ready.title")}>
         <Lines lines={lines} />
         <div class="ready-foot">
           {m.notice.value && <p role="status">{m.notice.value}</p>}
@@ -48,7 +49,7 @@ export function Ready() {
             <button type="button" onClick={takeUpdate}>{t("ready.update")}</button>
           )}
         </div>
-      </div>
+      </section>
       <p class="no-call">{t("call.caution")}</p>
       <button type="button" class="mark" data-mark="person">
         <span class="mark-word">{t("mark.button")}</span>

@@ -95,7 +95,8 @@ function Words({ view }: { view: ReturnView }) {
       <div class="main-figures">
         {view.range && (
           <p class="range">
-            {view.range.figure} <small>{view.range.unit}</small>
+            {view.range.figure}
+            <small>{view.range.unit}</small>
           </p>
         )}
         {view.direction && <p class="direction">{view.direction}</p>}
@@ -109,7 +110,7 @@ function Words({ view }: { view: ReturnView }) {
       {view.cautions.length > 0 && (
         <p class="caution">
           <Sign level="warn" /> {view.cautions[0]}
-          {view.cautions.length > 1 && <span class="caution-more"> {view.cautions.slice(1, 3).join(" ")}</span>}
+          {view.cautions.length > 1 && <span class="caution-more"> {view.cautions[1]}</span>}
         </p>
       )}
       <Undo />

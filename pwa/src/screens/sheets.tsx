@@ -14,6 +14,11 @@ import type { Mark } from "../wire/frame";
 import { Palettes } from "./setup";
 
 export function Sheets({ selection }: { selection: Selection }) {
+  const sheet = sheetOf(selection);
+  return sheet && <div class="sheet-place">{sheet}</div>;
+}
+
+function sheetOf(selection: Selection) {
   switch (m.sheet.value) {
     case "when":
       return <When selection={selection} />;
@@ -26,7 +31,7 @@ export function Sheets({ selection }: { selection: Selection }) {
     case "down":
       return <Down selection={selection} />;
     default:
-      return <Asked selection={selection} />;
+      return isAsked(selection) ? <Asked selection={selection} /> : null;
   }
 }
 
@@ -247,11 +252,15 @@ function Down({ selection }: { selection: Selection }) {
   );
 }
 
+function isAsked({ state }: Selection): boolean {
+  return !!state.asked?.length && state.in_charge?.holder === m.device.value;
+}
+
 /** A wish that only the one in charge can grant: asked here, with the picture still up. */
 function Asked({ selection }: { selection: Selection }) {
   const { state } = selection;
   const asked = state.asked?.[0];
-  if (!asked || state.in_charge?.holder !== m.device.value) return null;
+  if (!asked) return null;
   const by = asked.by || t("down.someone");
   const mark = state.marks.find((k) => k.event === asked.mark);
   const text =

@@ -92,6 +92,8 @@ function orderWords(frame: Frame | null): string {
       return side && Math.abs(frame.relative_deg ?? 0) >= 2.5
         ? t("do.steer_to.turn", { way: side, bearing })
         : t("do.steer_to", { bearing });
+    case "steer_leg":
+      return t("do.steer_leg", { bearing });
     case "come_about":
       return side ? t("do.come_about", { way: side, bearing }) : t("do.come_about.either", { bearing });
     case "no_position":

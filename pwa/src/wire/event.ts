@@ -16,6 +16,7 @@ export type Kind =
   | "attached" | "alongside" | "parted" | "aboard" | "missed_pass"
   | "stood_down" | "reopened" | "suspended" | "order"
   | "call_made" | "call_answered" | "buoy_dropped" | "buoy_seen"
+  | "search_laid" | "leg_begun" | "leg_ended" | "search_paused" | "search_resumed" | "search_dropped"
   | "note" | "undone" | "joined";
 
 /** Body of an event: JSON, its form decided by the kind. */
