@@ -10,12 +10,13 @@ import (
 	"github.com/google/uuid"
 
 	"wakeback/search/incident"
+	"wakeback/server/store"
 )
 
 // eventStore is what the ledger needs of the store.
 type eventStore interface {
 	// Append keeps events, all or none, and returns them with their numbers.
-	// When it returns they are on disk. errNotSaved is wrapped when it cannot
+	// When it returns they are on disk. store.ErrNotDurable is wrapped when it cannot
 	// write at all.
 	Append(events []incident.Event) ([]incident.Event, error)
 	// Event finds one event.
@@ -52,7 +53,7 @@ type writing struct {
 // write makes one commit: fn says what to write, and either all of it is kept
 // or nothing. It returns what was kept, with its numbers. When the store
 // cannot write, the events are still counted in the book, so that guidance
-// goes on from memory, and the error wraps errNotSaved.
+// goes on from memory, and the error wraps store.ErrNotDurable.
 func (l *ledger) write(fn func(w *writing) error) ([]incident.Event, error) {
 	l.mu.Lock()
 	defer l.mu.Unlock()
@@ -62,7 +63,7 @@ func (l *ledger) write(fn func(w *writing) error) ([]incident.Event, error) {
 	}
 	kept, err := l.store.Append(w.events)
 	if err != nil {
-		if errors.Is(err, errNotSaved) {
+		if errors.Is(err, store.ErrNotDurable) {
 			l.book.add(w.events...)
 		}
 		return nil, fmt.Errorf("keep %d events: %w", len(w.events), err)

@@ -9,6 +9,7 @@ import (
 
 	"wakeback/drift/nav"
 	"wakeback/search/incident"
+	"wakeback/server/store"
 )
 
 // memStore is a store in memory that can be told to fail, for tests of what
@@ -50,7 +51,7 @@ func (m *memStore) Append(events []incident.Event) ([]incident.Event, error) {
 	m.mu.Lock()
 	defer m.mu.Unlock()
 	if m.broken {
-		return nil, fmt.Errorf("test: %w", errNotSaved)
+		return nil, fmt.Errorf("test: %w", store.ErrNotDurable)
 	}
 	out := slices.Clone(events)
 	for i := range out {

@@ -10,6 +10,7 @@ import (
 
 	"wakeback/search/incident"
 	"wakeback/server/gate"
+	"wakeback/server/store"
 )
 
 // Problem is an RFC 9457 problem document. Field and Expected are extensions
@@ -91,9 +92,6 @@ type fieldIn struct {
 func (f *fieldIn) Error() string { return f.prefix + f.err.Error() }
 func (f *fieldIn) Unwrap() error { return f.err }
 
-// errNotSaved is wrapped by the errors of writing when nothing can be kept.
-var errNotSaved = errors.New("the store cannot write")
-
 // errConflict: the id is in the log already, with other content.
 var errConflict = errors.New("the id is in the log with other content")
 
@@ -104,6 +102,7 @@ func problemOf(err error) *problemError {
 	var field *incident.FieldError
 	var he *echo.HTTPError
 	var tooLarge *http.MaxBytesError
+	var conflict *store.ConflictError
 	switch {
 	case errors.As(err, &p):
 		return p
@@ -111,9 +110,9 @@ func problemOf(err error) *problemError {
 		return fieldProblem(err, field)
 	case errors.As(err, &tooLarge):
 		return pTooLarge.because(err, fmt.Sprintf("The body may have %d bytes.", tooLarge.Limit))
-	case errors.Is(err, errNotSaved):
+	case errors.Is(err, store.ErrNotDurable):
 		return pNotSaved.because(err, "The server cannot write at the moment. Keep what you have and send it again later; guidance goes on.")
-	case errors.Is(err, errConflict):
+	case errors.Is(err, errConflict), errors.As(err, &conflict):
 		return withField(pConflict.because(err, "An event of this id is in the log with other content. Use a new id."), "id", "an id that was not used")
 	case errors.As(err, &he):
 		return echoProblem(he)

@@ -266,7 +266,7 @@ func TestScenario32HelperGoesIn(t *testing.T) {
 // same store, and everyone sends what they have, several times.
 func TestScenario35ServerDies(t *testing.T) {
 	st := realStore(t)
-	r := rigOn(t, st.Store, nil)
+	r := rigOn(t, st, nil)
 	r.bridge.set(sailing(somewhere, start, 0, 6))
 	a := r.markNow(nil)
 	phones := []*phone{newPhone(), newPhone()}

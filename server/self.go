@@ -1,6 +1,7 @@
 package server
 
 import (
+	"encoding/json"
 	"fmt"
 	"time"
 
@@ -17,14 +18,21 @@ func ownDevice(docs gate.Docs) (incident.DeviceID, error) {
 	if err != nil {
 		return "", fmt.Errorf("read the server's own id: %w", err)
 	}
-	if id, err := uuid.ParseBytes(kept[name]); err == nil {
+	var id uuid.UUID
+	if doc, ok := kept[name]; ok {
+		if err := json.Unmarshal(doc, &id); err != nil {
+			return "", fmt.Errorf("read the server's own id: %w", err)
+		}
 		return incident.DeviceID(id.String()), nil
 	}
-	id, err := uuid.NewRandom()
-	if err != nil {
+	if id, err = uuid.NewRandom(); err != nil {
 		return "", fmt.Errorf("make the server's own id: %w", err)
 	}
-	if err := docs.PutDoc(kind, name, []byte(id.String())); err != nil {
+	doc, err := json.Marshal(id)
+	if err != nil {
+		return "", fmt.Errorf("write the server's own id: %w", err)
+	}
+	if err := docs.PutDoc(kind, name, doc); err != nil {
 		return "", fmt.Errorf("keep the server's own id: %w", err)
 	}
 	return incident.DeviceID(id.String()), nil

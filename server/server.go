@@ -55,8 +55,12 @@ type Store interface {
 // Health is how the store is, for the status page.
 type Health struct {
 	Durable  bool     `json:"durable"`  // acknowledged means on disk
-	Problem  string   `json:"problem"`  // why not; "" when durable
+	Problem  string   `json:"problem"`  // why not, in words for the crew; "" when durable
+	Mode     string   `json:"mode"`     // how it was opened: see package store
 	Warnings []string `json:"warnings"` // what was found at opening
+	// How long the newest commits took.
+	CommitMs    float64 `json:"commit_ms"` // the median
+	CommitP99Ms float64 `json:"commit_p99_ms"`
 }
 
 // newServer puts the parts together.

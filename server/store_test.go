@@ -1,14 +1,58 @@
 package server
 
-import "testing"
+import (
+	"context"
+	"os"
+	"testing"
 
-// keptStore is a store with a way to open it again, as after a crash.
+	"go.uber.org/goleak"
+
+	"wakeback/server/store"
+)
+
+func TestMain(m *testing.M) {
+	store.CheckMain()
+	code := m.Run()
+	if code == 0 {
+		if err := goleak.Find(); err != nil {
+			os.Stderr.WriteString(err.Error() + "\n")
+			code = 1
+		}
+	}
+	os.Exit(code)
+}
+
+// keptStore is a store on disk with a way to open it again.
 type keptStore struct {
-	Store
-	again func(t testing.TB) Store
+	disk
+	dir string
+}
+
+func openDisk(t testing.TB, dir string) disk {
+	t.Helper()
+	st, report, err := store.Open(context.Background(), store.Options{Dir: dir})
+	if err != nil {
+		t.Fatal(err)
+	}
+	t.Cleanup(func() {
+		if err := st.Close(); err != nil {
+			t.Error(err)
+		}
+	})
+	return disk{st, report}
 }
 
 func realStore(t testing.TB) *keptStore {
-	m := newMemStore()
-	return &keptStore{Store: m, again: func(testing.TB) Store { return m }}
+	t.Helper()
+	dir := t.TempDir()
+	return &keptStore{openDisk(t, dir), dir}
+}
+
+// again closes the store and opens its folder anew.
+func (k *keptStore) again(t testing.TB) Store {
+	t.Helper()
+	if err := k.Close(); err != nil {
+		t.Fatal(err)
+	}
+	return openDisk(t, k.dir)
 }
