@@ -46,6 +46,7 @@ type phase struct {
 	until    float64 // change of heading that ends it
 	rising   bool    // reached from below
 	word     string
+	code     Code
 	hold     bool // hold the heading of until, till the person is abaftDeg from the bow
 	abaftDeg float64
 	facing   bool // also ends when the person is ahead
@@ -69,18 +70,18 @@ const (
 func sequence(n Name, shiftDeg float64) ([]phase, error) {
 	switch n {
 	case Single:
-		return []phase{{helm: 1, until: singleUntil, rising: true, word: "hard over to the side of the fall"}}, nil
+		return []phase{{helm: 1, until: singleUntil, rising: true, code: HelmOver, word: "hard over to the side of the fall"}}, nil
 	case Williamson:
 		return []phase{
-			{helm: 1, until: shiftDeg, rising: true, word: "hard over to the side of the fall"},
-			{helm: -1, until: -(180 - midshipsShort), word: "shift the helm hard over to the other side"},
-			{helm: 0, until: -180, word: "midships, meet her"},
+			{helm: 1, until: shiftDeg, rising: true, code: HelmOver, word: "hard over to the side of the fall"},
+			{helm: -1, until: -(180 - midshipsShort), code: HelmShift, word: "shift the helm hard over to the other side"},
+			{helm: 0, until: -180, code: Midships, word: "midships, meet her"},
 		}, nil
 	case Scharnow:
 		return []phase{
-			{helm: 1, until: shiftDeg, rising: true, word: "hard over"},
-			{helm: -1, until: 180 + midshipsShort, word: "shift the helm hard over to the other side"},
-			{helm: 0, until: 180, word: "midships, meet her"},
+			{helm: 1, until: shiftDeg, rising: true, code: HelmOver, word: "hard over"},
+			{helm: -1, until: 180 + midshipsShort, code: HelmShift, word: "shift the helm hard over to the other side"},
+			{helm: 0, until: 180, code: Midships, word: "midships, meet her"},
 		}, nil
 	}
 	return nil, fmt.Errorf("%w: %q", ErrManoeuvre, n)
@@ -101,6 +102,7 @@ func ShiftDeg(n Name) float64 {
 type Order struct {
 	AtS     float64
 	Word    string
+	Code    Code
 	Helm    Helm
 	Until   nav.TrueDeg // the heading at which the next is due
 	UntilOf float64     // change of heading from the original course, to the first side

@@ -151,14 +151,14 @@ func (c Case) sequence(n Name) ([]phase, error) {
 	switch n {
 	case RaceTrack:
 		return []phase{
-			{helm: 1, until: raceTrackTurn, rising: true, word: "hard over to the side of the fall"},
-			{hold: true, until: raceTrackTurn, abaftDeg: raceTrackAbaft, word: "steady, run until the person is well abaft the beam"},
-			{helm: 1, until: 2*raceTrackTurn - midshipsShort, rising: true, word: "hard over to the same side"},
-			{helm: 0, until: 2 * raceTrackTurn, rising: true, word: "midships, steady on the old course"},
+			{helm: 1, until: raceTrackTurn, rising: true, code: HelmOver, word: "hard over to the side of the fall"},
+			{hold: true, until: raceTrackTurn, abaftDeg: raceTrackAbaft, code: Steady, word: "steady, run until the person is well abaft the beam"},
+			{helm: 1, until: 2*raceTrackTurn - midshipsShort, rising: true, code: HelmOver, word: "hard over to the same side"},
+			{helm: 0, until: 2 * raceTrackTurn, rising: true, code: Midships, word: "midships, steady on the old course"},
 		}, nil
 	case SlowCircle:
 		return []phase{
-			{helm: 1, slow: true, until: 360, rising: true, facing: true, word: "engine to neutral, helm to the side of the fall so that the stern swings clear; then round slowly"},
+			{helm: 1, slow: true, until: 360, rising: true, facing: true, code: IdleTurn, word: "engine to neutral, helm to the side of the fall so that the stern swings clear; then round slowly"},
 		}, nil
 	}
 	return sequence(n, c.ShiftDeg.Or(ShiftDeg(n)))

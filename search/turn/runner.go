@@ -86,7 +86,7 @@ const slowPart = 0.5
 func (r *runner) phase(ph phase) error {
 	helm := Helm(ph.helm * float64(r.side))
 	r.orders = append(r.orders, Order{
-		AtS: r.t, Word: ph.word, Helm: helm, UntilOf: ph.until, Until: r.c.Heading.Add(ph.until * float64(r.side)),
+		AtS: r.t, Word: ph.word, Code: ph.code, Helm: helm, UntilOf: ph.until, Until: r.c.Heading.Add(ph.until * float64(r.side)),
 	})
 	r.slow = ph.slow
 	before, begun, eased := r.helm, r.t, false
@@ -123,13 +123,7 @@ func (r *runner) done(ph phase) bool {
 // facingDeg is when the person is ahead; our choice.
 const facingDeg = 10
 
-// steer is a helmsman: helm in proportion to what the heading is off, less
-// what the swing will bring by itself.
-func (r *runner) steer(course nav.TrueDeg) Helm {
-	off := course.Minus(nav.True(r.s.HeadingDeg)) - r.s.RateDegS*r.c.Model.LagS
-	const fullAtDeg = 30 // hard over from 30 degrees off; our choice
-	return Helm(clamp(off/fullAtDeg, 1))
-}
+func (r *runner) steer(course nav.TrueDeg) Helm { return helmsman(course, r.s, r.c.Model) }
 
 // runBack steers for the person until they are alongside, or until they have
 // been passed as close as the vessel can come: a person within the turning
