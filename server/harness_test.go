@@ -90,6 +90,7 @@ type rig struct {
 	bridge *bridge
 	http   *httptest.Server
 	live   *live
+	keeper *keeper
 }
 
 // rigOn starts a server on a store. Pairing is open unless change says else.
@@ -104,7 +105,7 @@ func rigOn(t testing.TB, st Store, change func(*Config)) *rig {
 	if err != nil {
 		t.Fatal(err)
 	}
-	r.Server, r.live = s, &live{s: s}
+	r.Server, r.live, r.keeper = s, &live{s: s}, &keeper{s: s}
 	r.http = httptest.NewUnstartedServer(s.echo)
 	r.http.Config = s.httpServer()
 	r.http.Start()
@@ -249,5 +250,9 @@ func (r *rig) only() incident.State {
 	return states[0]
 }
 
-// turn lets the live loop look once.
-func (r *rig) turn() { r.live.calm = time.Time{}; r.live.round(r.clock.now()) }
+// turn lets the live loop and the keeper look once.
+func (r *rig) turn() {
+	r.live.last = time.Time{}
+	r.live.round(r.clock.now())
+	r.keeper.look(r.clock.now())
+}

@@ -18,19 +18,7 @@ const (
 	// through four degrees in it. Once a second otherwise.
 	livePace = 200 * time.Millisecond
 	calmPace = time.Second
-	// The track goes to disk in batches, because each costs a flush and a
-	// memory card has only so many. What a power cut can take of the track is
-	// this much; marks and events are never batched. Our choice.
-	calmFlush = 10 * time.Second
-	liveFlush = 2 * time.Second
 )
-
-// trackStore keeps tracks: the vessel's under the server's own device, and
-// each phone's.
-type trackStore interface {
-	AppendTrack(device incident.DeviceID, fixes []nav.Fix) error
-	Track(device incident.DeviceID, from, to time.Time) ([]nav.Fix, error)
-}
 
 // fixMessage is where the own vessel is.
 type fixMessage struct {
@@ -53,28 +41,25 @@ type steerMessage struct {
 	advice.Frame
 }
 
-// live says where the vessel is and how to steer, until ctx ends.
+// live says where the vessel is and how to steer. It never touches the disk:
+// one that hangs must not hold up the arrow.
 type live struct {
-	s       *Server
-	shown   []string  // keys of the steer words that clients hold
-	track   []nav.Fix // not on disk yet
-	flushed time.Time
-	calm    time.Time // of the last round without an incident
-	phoneAt time.Time
+	s     *Server
+	shown []string  // keys of the steer words that clients hold
+	last  time.Time // of the last round
 }
 
 func (s *Server) runLive(ctx context.Context) {
-	l := &live{s: s, flushed: s.now()}
+	l := &live{s: s}
 	ticker := time.NewTicker(livePace)
 	defer ticker.Stop()
-	defer l.flush()
 	for {
 		l.round(s.now())
 		select {
 		case <-ctx.Done():
 			return
 		case <-s.changed:
-			l.calm = time.Time{} // what changed is shown at once
+			l.last = time.Time{} // what changed is shown at once
 		case <-ticker.C:
 		}
 	}
@@ -83,10 +68,10 @@ func (s *Server) runLive(ctx context.Context) {
 // round is one look at the vessel and the incidents.
 func (l *live) round(now time.Time) {
 	states := l.s.book.live()
-	if len(states) == 0 && now.Sub(l.calm).Abs() < calmPace {
+	if len(states) == 0 && now.Sub(l.last).Abs() < calmPace {
 		return
 	}
-	l.calm = now
+	l.last = now
 	vessel := l.s.vessel.now(now)
 	l.remember(vessel)
 	words, keys := l.words(now, vessel, states)
@@ -96,15 +81,6 @@ func (l *live) round(now time.Time) {
 	over := slices.DeleteFunc(l.shown, func(k string) bool { return slices.Contains(keys, k) })
 	l.s.hub.Forget(over...)
 	l.shown = keys
-	every := calmFlush
-	if len(states) > 0 {
-		every = liveFlush
-	}
-	if now.Sub(l.flushed).Abs() >= every {
-		l.flush()
-		l.flushed = now
-	}
-	l.s.showHealth()
 }
 
 // remember puts a new fix into the track, once a second at most. A recording
@@ -114,42 +90,10 @@ func (l *live) remember(v feed.Vessel) {
 	if !ok || v.Replay {
 		return
 	}
-	if n := len(l.track); n > 0 && f.At.Sub(l.track[n-1].At) < time.Second {
-		return
-	}
 	if last, ok := l.s.vessel.last().Get(); ok && f.At.Sub(last.At) < time.Second {
 		return
 	}
 	l.s.vessel.remember(f)
-	l.track = append(l.track, f)
-}
-
-// maxHeld bounds the track that waits for a disk which cannot write; our
-// choice, a quarter of an hour at one fix a second.
-const maxHeld = 900
-
-func (l *live) flush() {
-	if len(l.track) > 0 {
-		err := l.s.store.AppendTrack(l.s.ledger.self, l.track)
-		switch {
-		case err == nil:
-			l.track = nil
-		case len(l.track) >= maxHeld:
-			l.track = l.track[len(l.track)-maxHeld/2:]
-		}
-		if err != nil {
-			l.s.log.Warn("write the track", "error", err)
-		}
-	}
-	byPhone := make(map[incident.DeviceID][]nav.Fix)
-	for _, f := range l.s.phones.take() {
-		byPhone[f.Device] = append(byPhone[f.Device], f.fix())
-	}
-	for device, fixes := range byPhone {
-		if err := l.s.store.AppendTrack(device, fixes); err != nil {
-			l.s.log.Warn("write the track of a phone", "device", string(device), "error", err)
-		}
-	}
 }
 
 // words are the newest words for all screens: the fix, and for every person

@@ -45,8 +45,6 @@ func (s *Server) readTrack() error {
 	if err != nil {
 		return fmt.Errorf("read the track: %w", err)
 	}
-	for _, f := range fixes {
-		s.vessel.remember(f)
-	}
+	s.vessel.load(fixes)
 	return nil
 }

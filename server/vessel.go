@@ -22,8 +22,9 @@ type Instruments interface {
 type vessel struct {
 	instruments Instruments // nil when there are none
 
-	mu    sync.Mutex // guards track
-	track nav.Track  // of the last keepTrack
+	mu      sync.Mutex // guards both
+	track   nav.Track  // of the last keepTrack
+	unsaved []nav.Fix  // of track, not on disk yet
 }
 
 const (
@@ -51,6 +52,37 @@ func (v *vessel) remember(f nav.Fix) {
 	defer v.mu.Unlock()
 	v.track.Add(f)
 	v.track.Trim(f.At.Add(-keepTrack))
+	v.unsaved = append(v.unsaved, f)
+}
+
+// load takes a track that is on disk.
+func (v *vessel) load(fixes []nav.Fix) {
+	v.mu.Lock()
+	defer v.mu.Unlock()
+	v.track = nav.NewTrack(fixes)
+}
+
+// pending takes out what is not on disk yet.
+func (v *vessel) pending() []nav.Fix {
+	v.mu.Lock()
+	defer v.mu.Unlock()
+	fixes := v.unsaved
+	v.unsaved = nil
+	return fixes
+}
+
+// maxUnsaved bounds the track that waits for a disk which cannot write; our
+// choice, an hour at one fix a second. What is older stays in memory only.
+const maxUnsaved = 3600
+
+// putBack returns what could not be written.
+func (v *vessel) putBack(fixes []nav.Fix) {
+	v.mu.Lock()
+	defer v.mu.Unlock()
+	v.unsaved = append(fixes, v.unsaved...)
+	if n := len(v.unsaved) - maxUnsaved; n > 0 {
+		v.unsaved = v.unsaved[n:]
+	}
 }
 
 // place is where the vessel was at a moment, and how well that is known.
