@@ -248,7 +248,8 @@ type coefficients struct {
 	dt         float64 // seconds
 	keep, kick float64 // of the errors, each step
 	jibe       uint32  // of 2^32, each step that decides
-	floor      bool    // leeway does not fall below zero
+	floor      float64 // downwind leeway at or below which there is none
+	normals    *normalTable
 }
 
 // coefficients of the random flight: e' = keep e + (1-keep) bias + kick z, which
@@ -258,11 +259,15 @@ func (cl *Cloud) coefficients() coefficients {
 	p := m.Persisting.Or(0)
 	keep := math.Exp(-m.Step.Seconds() / m.Correlation.Seconds())
 	hours := m.Step.Hours() * jibeEvery
+	floor := math.Inf(-1) // a regression may go to windward in a light wind
+	if cl.c.Class.Derived() {
+		floor = 0
+	}
 	return coefficients{
 		dt: m.Step.Seconds(), keep: keep, kick: math.Sqrt((1 - p) * (1 - keep*keep)),
 		// This chance keeps exp(-2 rate t), the correlation of the side in time,
 		// for any step.
 		jibe:  uint32(math.Round((1 - math.Exp(-2*cl.c.Class.JibesPerHour*hours)) / 2 * (1 << 32))),
-		floor: cl.c.Class.Derived(),
+		floor: floor, normals: normals(),
 	}
 }

@@ -10,8 +10,8 @@ const chunk = 64
 // at those steps, and one random number in five is saved.
 const jibeEvery = 4
 
-// Numbers of a member's stream: each step has three places.
-const perStep = 3
+// A member's stream has three places for each step: one for jibing, two for the
+// errors.
 
 // run makes the next n steps, at most chunk.
 func (cl *Cloud) run(n int) {
@@ -22,39 +22,69 @@ func (cl *Cloud) run(n int) {
 		cl.past = f.hash(cl.past)
 	}
 	k := cl.coefficients()
+	var e series
 	for i := range cl.m.key {
 		if cl.m.state[i] != ashore {
-			cl.runMember(i, k)
+			cl.runMember(i, &k, &e)
 		}
 	}
 	cl.steps += n
 }
 
-// runMember makes one member's steps. It is long because all of a member's
-// state stays in registers for the length of a chunk.
-func (cl *Cloud) runMember(i int, k coefficients) {
-	m, t := &cl.m, normals()
-	first, dt := 0, k.dt
-	if fell := int(m.release[i] / k.dt); fell >= cl.steps {
-		first = fell - cl.steps
-		if first >= len(cl.env) {
+// series are the errors of one member over a chunk, in standard deviations, one
+// before each step.
+type series [chunk]struct{ windE, windN, currentE, currentN float64 }
+
+// runMember makes one member's steps: first all its errors, then all its ways.
+// Each loop has so much in hand as fits into registers; this is why there are
+// two, and why they are not cut further.
+func (cl *Cloud) runMember(i int, k *coefficients, e *series) {
+	env, step, dt := cl.env, cl.steps, k.dt
+	if fell := int(cl.m.release[i] / k.dt); fell >= step {
+		if fell-step >= len(env) {
 			return
 		}
-		dt = float64(fell+1)*k.dt - m.release[i] // the step it falls in is shorter
+		env = env[fell-step:]
+		step = fell
+		dt = float64(fell+1)*k.dt - cl.m.release[i] // the step it falls in is shorter
 	}
-	x, y := m.east[i], m.north[i]
+	key := cl.m.key[i] + uint64(step)*golden3
+	cl.m.wander(i, k, e[:len(env)], key)
+	cl.move(i, k, env, e, step, dt)
+}
+
+// wander makes a member's errors for as many steps as e has room for.
+func (m *members) wander(i int, k *coefficients, e []struct{ windE, windN, currentE, currentN float64 }, key uint64) {
+	t, keep, kick := k.normals, k.keep, k.kick
 	wE, wN, cE, cN := m.windE[i], m.windN[i], m.currentE[i], m.currentN[i]
 	wEach, wNach, cEach, cNach := m.pullE[i], m.pullN[i], m.drawE[i], m.drawN[i]
+	for s := range e {
+		at := &e[s]
+		at.windE, at.windN, at.currentE, at.currentN = wE, wN, cE, cN
+		a, b := mix64(key+golden), mix64(key+golden2)
+		wE = keep*wE + wEach + kick*t.normal(uint32(a))
+		wN = keep*wN + wNach + kick*t.normal(uint32(a>>32))
+		cE = keep*cE + cEach + kick*t.normal(uint32(b))
+		cN = keep*cN + cNach + kick*t.normal(uint32(b>>32))
+		key += golden3
+	}
+	m.windE[i], m.windN[i], m.currentE[i], m.currentN[i] = wE, wN, cE, cN
+}
+
+// move makes a member's way, the first step of it dt long.
+func (cl *Cloud) move(i int, k *coefficients, env []forcing, e *series, step int, dt float64) {
+	m, land := &cl.m, cl.land
+	x, y := m.east[i], m.north[i]
 	downA, downB, sideA, sideB := m.downA[i], m.downB[i], m.sideA[i], m.sideB[i]
-	key := m.key[i] + uint64(cl.steps+first)*(golden*perStep&math.MaxUint64)
-	for s := first; s < len(cl.env); s++ {
-		f := &cl.env[s]
-		wx, wy := f.wind.EastMs+f.windSD*wE, f.wind.NorthMs+f.windSD*wN
-		vx, vy := f.current.EastMs+f.currentSD*cE, f.current.NorthMs+f.currentSD*cN
+	for s := range env {
+		f, err := &env[s], &e[s%chunk]
+		wx, wy := f.wind.EastMs+f.windSD*err.windE, f.wind.NorthMs+f.windSD*err.windN
+		vx, vy := f.current.EastMs+f.currentSD*err.currentE, f.current.NorthMs+f.currentSD*err.currentN
 		if w := math.Sqrt(wx*wx + wy*wy); w > 0 {
 			down, side := downA*w+downB, sideA*w+sideB
-			if down > 0 || !k.floor {
-				down, side = down/w, side/w
+			if down > k.floor {
+				per := 1 / w
+				down, side = down*per, side*per
 				vx += down*wx + side*wy
 				vy += down*wy - side*wx
 			}
@@ -62,24 +92,20 @@ func (cl *Cloud) runMember(i int, k coefficients) {
 		x += vx * dt
 		y += vy * dt
 		dt = k.dt
-		if cl.land != nil && cl.strand(i, x, y) {
+		if land != nil && cl.strand(i, x, y) {
 			break
 		}
-		a, b := mix64(key+golden), mix64(key+2*golden&math.MaxUint64)
-		wE = k.keep*wE + wEach + k.kick*t.normal(uint32(a))
-		wN = k.keep*wN + wNach + k.kick*t.normal(uint32(a>>32))
-		cE = k.keep*cE + cEach + k.kick*t.normal(uint32(b))
-		cN = k.keep*cN + cNach + k.kick*t.normal(uint32(b>>32))
-		if (cl.steps+s)%jibeEvery == jibeEvery-1 && uint32(mix64(key)>>32) < k.jibe {
+		if step%jibeEvery == jibeEvery-1 && k.jibes(m.key[i]+uint64(step)*golden3) {
 			sideA, m.otherA[i] = m.otherA[i], sideA
 			sideB, m.otherB[i] = m.otherB[i], sideB
 		}
-		key += golden * perStep & math.MaxUint64
+		step++
 	}
 	m.east[i], m.north[i] = x, y
-	m.windE[i], m.windN[i], m.currentE[i], m.currentN[i] = wE, wN, cE, cN
 	m.sideA[i], m.sideB[i] = sideA, sideB
 }
+
+func (k *coefficients) jibes(key uint64) bool { return uint32(mix64(key)>>32) < k.jibe }
 
 // strand keeps the member's dealings with the coast, and reports whether it is
 // ashore. A member that starts on land is taken for afloat until it has been
@@ -112,12 +138,12 @@ func (cl *Cloud) look(rest float64, f forcing) {
 }
 
 // velocity is a member's motion over the ground.
-func (m *members) velocity(i int, f forcing, floor bool) (vx, vy float64) {
+func (m *members) velocity(i int, f forcing, floor float64) (vx, vy float64) {
 	wx, wy := f.wind.EastMs+f.windSD*m.windE[i], f.wind.NorthMs+f.windSD*m.windN[i]
 	vx, vy = f.current.EastMs+f.currentSD*m.currentE[i], f.current.NorthMs+f.currentSD*m.currentN[i]
 	w := math.Sqrt(wx*wx + wy*wy)
 	down, side := m.downA[i]*w+m.downB[i], m.sideA[i]*w+m.sideB[i]
-	if w > 0 && (down > 0 || !floor) {
+	if w > 0 && down > floor {
 		vx += (down*wx + side*wy) / w
 		vy += (down*wy - side*wx) / w
 	}

@@ -16,6 +16,8 @@ import (
 
 const (
 	golden   = 0x9e3779b97f4a7c15
+	golden2  = golden * 2 & (1<<64 - 1)
+	golden3  = golden * 3 & (1<<64 - 1)
 	stafford = 0xbf58476d1ce4e5b9
 	variant  = 0x94d049bb133111eb
 )
@@ -45,40 +47,43 @@ func (s *stream) normal(t *normalTable) float64 { return t.normal(uint32(s.next(
 // of 32 bits makes one of them, without rejection, so that no comparison of
 // rounded numbers can make two machines take different ways; they differ by
 // rounding alone. The distribution is that of the straight lines: its variance
-// is 1 within 1e-5, and no number is beyond 6.4. Both are checked by a test.
+// is 1 within 1e-5, and no number is beyond 6.3. Both are checked by a test.
 
 const (
 	segmentBits = 6
-	mantissa    = 52
-	cellShift   = mantissa - segmentBits
-	octaves     = 32
+	segments    = 1 << segmentBits
+	octaves     = 32 // one is never used: the numbers have 31 bits
+	halfTable   = octaves << segmentBits
+	cellShift   = 52 - segmentBits    // of the bits of a float64
 	firstCell   = 1023 << segmentBits // the cell of 1.0
 )
 
-// normalTable has, for each cell, the line z = c0 + c1 w, where w/2^33 is the
-// probability left of -z.
-type normalTable [octaves << segmentBits]struct{ c0, c1 float64 }
+// normalTable has, for each cell, the line z = c0 + c1 w, where |w|/2^32 is the
+// probability beyond z; the second half is that of negative w.
+type normalTable [2 * halfTable]struct{ c0, c1 float64 }
 
-// normal turns 32 even bits into a normal number.
+// normal turns 32 even bits into a normal number. The exponent and the first
+// bits of the number as a float64 are its cell.
 func (t *normalTable) normal(u uint32) float64 {
-	w := float64(u<<1 | 1)
+	w := float64(int32(u) | 1)
 	b := math.Float64bits(w)
-	cell := &t[(b>>cellShift-firstCell)&(octaves<<segmentBits-1)]
-	z := cell.c0 + cell.c1*w
-	return math.Float64frombits(math.Float64bits(z) | uint64(u>>31)<<63)
+	// 1023, the exponent of 1.0, and 1 more make a number divisible by 32.
+	cell := &t[(b>>cellShift+segments)&(halfTable-1)|b>>63*halfTable]
+	return cell.c0 + cell.c1*w
 }
 
 var normals = sync.OnceValue(func() *normalTable {
 	t := new(normalTable)
-	for i := range t {
+	for i := range halfTable - segments {
 		lo := math.Float64frombits(uint64(firstCell+i) << cellShift)
 		hi := math.Float64frombits(uint64(firstCell+i+1) << cellShift)
 		z0, z1 := quantile(lo), quantile(hi)
-		t[i].c1 = (z1 - z0) / (hi - lo)
-		t[i].c0 = z0 - t[i].c1*lo
+		slope := (z1 - z0) / (hi - lo)
+		t[i].c0, t[i].c1 = z0-slope*lo, slope
+		t[i+halfTable].c0, t[i+halfTable].c1 = -t[i].c0, slope
 	}
 	return t
 })
 
-// quantile is the z that leaves w/2^33 on the other side of -z.
-func quantile(w float64) float64 { return math.Sqrt2 * math.Erfinv(1-w*0x1p-32) }
+// quantile is the z with the probability w/2^32 beyond it.
+func quantile(w float64) float64 { return math.Sqrt2 * math.Erfinv(1-w*0x1p-31) }
