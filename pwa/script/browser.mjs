@@ -35,6 +35,13 @@ export async function phone(browser, options = {}) {
     ...(geolocation && { geolocation, permissions: ["geolocation"] }),
   });
   await context.addInitScript((p) => {
+    // What is sounded can be read by a story: the first tone's pitch tells which sound it is.
+    window.toneStarts = [];
+    const start = OscillatorNode.prototype.start;
+    OscillatorNode.prototype.start = function (when) {
+      window.toneStarts.push(Math.round(this.frequency.value));
+      return start.call(this, when);
+    };
     if (p) localStorage.setItem("wakeback.palette", p);
   }, palette ?? "");
   const page = await context.newPage();

@@ -112,6 +112,29 @@ export const stories = {
     assert.equal(await a.page.locator(".ring").count(), 1);
   },
 
+  "scenario 32: a helper goes in: a new mark at the vessel, one fewer aboard": async (s) => {
+    const { fake, a } = await twoPhones(s);
+    await a.mark();
+    await a.returning();
+    await a.settled();
+    await a.tap("More", ".touch");
+    for (const n of [1, 2, 3]) {
+      await a.tap("One more aboard");
+      await a.says(`Head-count: ${n} aboard, 1 outside the rail`);
+    }
+    await a.tap("Back to the ring");
+    await a.tap("ALONGSIDE");
+    await a.says("Alongside is not aboard");
+    await a.mark(".touch .second");
+    await until("mark and count are stored", () => fake.events.at(-1).kind === "head_count" && fake.events.at(-1).body.aboard === 2);
+    assert.equal(fake.events.filter((e) => e.kind === "marked").length, 2);
+    await a.says("Person 1: alongside, not aboard");
+    await a.says("Person 2: in the water");
+    await a.settled();
+    await a.tap("More", ".touch");
+    await a.says("Head-count: 2 aboard, 2 outside the rail");
+  },
+
   "seen, lost, undone: everything but time can be taken back, and stays in the log": async (s) => {
     const { fake, a, b } = await twoPhones(s);
     await a.mark();

@@ -177,6 +177,7 @@ function More({ selection }: { selection: Selection }) {
         <button type="button" onClick={go("down")}>{t("more.stand_down")}</button>
       </div>
       <p>{charge ? t("setup.charge_is", { name: charge.name || t("down.someone") }) : t("setup.charge_none")}</p>
+      <Heads selection={selection} />
       <h3>{t("marks.title")}</h3>
       <Marks selection={selection} />
       <Palettes />
@@ -188,6 +189,22 @@ function More({ selection }: { selection: Selection }) {
         <button type="submit">{t("more.note_add")}</button>
       </form>
     </Sheet>
+  );
+}
+
+/** How many are aboard, and how many outside the rail. */
+function Heads({ selection }: { selection: Selection }) {
+  const { state } = selection;
+  const out = state.persons.filter((p) => p.status !== "aboard").length;
+  const aboard = state.head_count?.aboard;
+  return (
+    <>
+      <p>{aboard === undefined ? t("heads.none", { out }) : t("heads.count", { aboard, out })}</p>
+      <div class="grid">
+        <button type="button" onClick={() => void act.headCount(selection, (aboard ?? 0) - 1)}>{t("heads.fewer")}</button>
+        <button type="button" onClick={() => void act.headCount(selection, (aboard ?? 0) + 1)}>{t("heads.more")}</button>
+      </div>
+    </>
   );
 }
 

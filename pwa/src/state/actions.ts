@@ -49,8 +49,25 @@ export function missedPass(s: Selection): Promise<LogEvent> {
   return log(s, "missed_pass", ofPerson(s));
 }
 
-export function aboard(s: Selection, condition: string): Promise<LogEvent> {
-  return log(s, "aboard", { ...ofPerson(s), condition });
+export async function aboard(s: Selection, condition: string): Promise<LogEvent> {
+  const was = s.person?.status;
+  const event = await log(s, "aboard", { ...ofPerson(s), condition });
+  if (was !== "aboard" && condition !== "never_left") await changeHeadCount(s, 1);
+  return event;
+}
+
+/** Says how many were counted aboard. */
+export function headCount(s: Selection, aboardNow: number): Promise<LogEvent> {
+  const expected = s.state.head_count?.expected;
+  return log(s, "head_count", { aboard: Math.max(0, aboardNow), ...(expected != null && { expected }) });
+}
+
+/** One more or fewer aboard, where they were counted at all; beside what caused it, so with no undo of its own. */
+async function changeHeadCount(s: Selection, by: number): Promise<void> {
+  const count = s.state.head_count;
+  if (!count || count.aboard + by < 0) return;
+  const body = { aboard: count.aboard + by, ...(count.expected != null && { expected: count.expected }) };
+  await parts().add("head_count", s.state.id, body, { drill: !!s.state.drill });
 }
 
 export function callMade(s: Selection, call: "distress" | "urgency" | "cancel"): Promise<LogEvent> {
@@ -193,7 +210,7 @@ export async function pair(code: string): Promise<string> {
     const response = await fetch("/api/v1/pair", {
       method: "POST",
       headers: { "content-type": "application/json" },
-      body: JSON.stringify({ code: code.trim(), name: m.myName.value || t("down.someone") }),
+      body: JSON.stringify({ code: code.trim(), name: m.myName.value || t("setup.phone") }),
     });
     if (!response.ok) {
       const p = (await response.json().catch(() => ({}))) as { detail?: string; title?: string };

@@ -13,7 +13,7 @@ import type { Outbox } from "../sync/outbox";
 import { Sender } from "../sync/sender";
 import { Stream } from "../sync/stream";
 import type { Kind, LogEvent, Position } from "../wire/event";
-import type { Frame, Message } from "../wire/frame";
+import type { Frame, Message, State } from "../wire/frame";
 import * as m from "./model";
 import { linkView } from "./link_view";
 import { roughStates } from "./rough";
@@ -130,9 +130,21 @@ function pressed(p: Pressed): void {
   }
   m.lastAct.value = { id: draft.id, key: "kind.marked", ms: Date.now(), undoable: false };
   void p.kept.then(async (event) => {
+    const before = m.incidents.value.find((s) => s.id === draft.incident || s.joined?.includes(draft.incident));
     await took([event]);
     void control.sender.send();
+    await oneFewer(draft, before);
   });
+}
+
+/** Someone else went over the side: where heads were counted, one fewer is aboard. */
+async function oneFewer(draft: Pressed["draft"], before: State | undefined): Promise<void> {
+  const count = before?.head_count;
+  const known = before?.persons.some((p) => p.no === draft.body.person && p.status !== "aboard");
+  const another = before?.marks.some((k) => k.person === draft.body.person && k.event !== draft.id);
+  if (!count || count.aboard < 1 || draft.body.person === undefined || (known && another)) return;
+  const body = { aboard: count.aboard - 1, ...(count.expected != null && { expected: count.expected }) };
+  await add("head_count", draft.incident, body, { drill: !!draft.drill });
 }
 
 /** New events, from here or from the server. */

@@ -213,6 +213,11 @@ export const en = {
   "people.missed": "Missed pass",
   "people.steer": "Steer to person {n}",
 
+  "heads.none": "Head-count: not taken, {out} outside the rail",
+  "heads.count": "Head-count: {aboard} aboard, {out} outside the rail",
+  "heads.more": "One more aboard",
+  "heads.fewer": "One fewer aboard",
+
   "marks.title": "Marks",
   "marks.working": "steered by",
   "marks.choose": "Steer by mark {number}",
@@ -263,6 +268,7 @@ export const en = {
 
   "setup.title": "Set up",
   "setup.name": "Your name in the log",
+  "setup.phone": "Phone",
   "setup.pair": "Pairing code",
   "setup.pair_do": "Pair this phone",
   "setup.pair_bad": "The code was not taken: {why}",
