@@ -85,9 +85,11 @@ const (
 	noWayKn      = 0.5 // below it she does not answer the helm
 	wayAgainKn   = 1.0
 	liveHorizonS = 900 // how far ahead the next order is looked for
-	liveCoarse   = 4   // steps of the model taken at once in looking ahead
+	liveParts    = 40  // steps of looking ahead to a radius run
 	slackSwing   = 0.1 // of the rate hard over: not turning
 	hesitateS    = 3   // allowed to a helmsman beyond the order's delay
+	learnPart    = 0.2 // weight of each second's radius
+	learnLimit   = 2.0 // times the trial's radius, or its part, at most
 )
 
 // Live gives helm orders from the real track. It is made when the first order
@@ -109,7 +111,11 @@ type Live struct {
 	watch  PassWatch
 	still  bool
 	doubts []Doubt
-	last   Advice
+	// swingDegS is the rate of turn seen, smoothed; the state's own is half reckoned.
+	swingDegS float64
+	tookOver  bool
+	trialM    float64 // the radius given
+	last      Advice
 }
 
 // NewLive begins a manoeuvre. It refuses what [Plan] refuses.
@@ -132,7 +138,7 @@ func NewLive(n Name, c Case, b Begun) (*Live, error) {
 	p := r.person()
 	r.s.EastM -= p.EastM
 	r.s.NorthM -= p.NorthM
-	l := &Live{c: c, name: n, side: side, back: b.Back, phases: seq, at: b.At, est: r.s}
+	l := &Live{c: c, name: n, side: side, back: b.Back, phases: seq, at: b.At, est: r.s, trialM: c.Model.RadiusM}
 	l.steer.model = c.Model
 	l.last = l.advise()
 	return l, nil
@@ -159,6 +165,9 @@ func (l *Live) Update(o Sensed) Advice {
 	headed := l.senseHeading(o, was, dt)
 	l.sensePosition(o, dt)
 	l.checkSide()
+	if l.tookOver {
+		l.doubt(SideTakenOver)
+	}
 	l.advance()
 	l.last = l.advise()
 	if !headed && l.stage >= len(l.phases) && l.last.Code != Alongside {
@@ -186,8 +195,7 @@ func (l *Live) checkSide() {
 	}
 	change := change(l.est, l.c.Heading, l.side)
 	if l.stage == 0 && change < -adoptDeg {
-		l.side = -l.side
-		l.doubt(SideTakenOver)
+		l.side, l.tookOver = -l.side, true
 		return
 	}
 	if l.stage == 0 && change < -wrongWayDeg {
@@ -195,10 +203,25 @@ func (l *Live) checkSide() {
 	}
 	m := l.c.Model
 	answered := m.OrderDelayS + m.RudderDeg/m.RudderRate + 2*m.LagS + hesitateS
-	rate := l.est.RateDegS * ph.helm * float64(l.side)
-	if l.sinceS > answered && rate < slackSwing*l.hardRate() {
-		l.doubt(NotTurning)
+	if l.sinceS < answered || ph.slow {
+		return
 	}
+	rate := l.swingDegS * ph.helm * float64(l.side)
+	if rate < slackSwing*l.hardRate() {
+		l.doubt(NotTurning)
+		return
+	}
+	l.learnRadius(rate)
+}
+
+// learnRadius brings the model's radius towards that of the turn she is in. A
+// vessel in a seaway, loaded or slow to be put hard over turns unlike her
+// trial; what she does now decides whether the person can be turned at.
+func (l *Live) learnRadius(rateDegS float64) {
+	seen := l.est.SpeedMs / (rateDegS * math.Pi / 180)
+	seen = math.Max(l.trialM/learnLimit, math.Min(l.trialM*learnLimit, seen))
+	l.c.Model.RadiusM += learnPart * (seen - l.c.Model.RadiusM)
+	l.steer.model = l.c.Model
 }
 
 // advance moves on to the order that is due. It never goes back: an order
@@ -214,13 +237,16 @@ func (l *Live) advance() {
 // is held, by the bearing of the person; and for the last turn also when the
 // person is ahead, so that a late or wide turn is not driven past them.
 func (l *Live) done(ph phase) bool {
-	rangeM, relative := l.sight()
-	switch {
-	case ph.hold:
+	if ph.hold {
+		_, relative := l.sight()
 		return math.Abs(relative) >= ph.abaftDeg
-	case l.comingAtThem() && math.Abs(relative) < facingDeg && rangeM > l.c.Model.RadiusM:
-		return true
-	case ph.code == Midships && l.sinceS > l.c.Model.OrderDelayS+hesitateS && math.Abs(l.est.RateDegS) < slackSwing*l.hardRate():
+	}
+	if l.comingAtThem() {
+		if rangeM, relative := l.sight(); math.Abs(relative) < facingDeg && rangeM > l.c.Model.RadiusM {
+			return true
+		}
+	}
+	if ph.code == Midships && l.sinceS > l.c.Model.OrderDelayS+hesitateS && math.Abs(l.est.RateDegS) < slackSwing*l.hardRate() {
 		return true // stopped swinging: the heading is steered from here
 	}
 	return reached(l.est, l.c.Heading, l.side, ph)
@@ -251,7 +277,7 @@ func (l *Live) advise() Advice {
 		RangeM: nav.Some(rangeM), Bearing: nav.Some(nav.True(l.est.HeadingDeg + relative)),
 	}
 	switch {
-	case l.still && rangeM > alongsideM:
+	case l.still && (l.stage < len(l.phases) || rangeM > alongsideM):
 		a.Code = NoWay
 	case l.stage < len(l.phases):
 		l.ordered(&a)
@@ -304,7 +330,9 @@ func sideOf(v float64) Side {
 func (l *Live) lookAhead(ph phase) nav.Opt[float64] {
 	ahead := *l
 	order := Helm(ph.helm * float64(l.side))
-	const dt = stepS * liveCoarse
+	// A fortieth of the time to run one radius turns her by less than two
+	// degrees a step.
+	dt := math.Max(stepS, math.Min(1, l.c.Model.RadiusM/l.c.Model.SpeedMs/liveParts))
 	for t := 0.0; t < liveHorizonS; t += dt {
 		if ahead.done(ph) {
 			return nav.Some(t)

@@ -77,6 +77,7 @@ func (l *Live) senseHeading(o Sensed, was State, dt float64) bool {
 	l.est.HeadingDeg += heading.Minus(nav.True(reckoned.HeadingDeg))
 	if dt <= gapS {
 		seen := (l.est.HeadingDeg - was.HeadingDeg) / dt
+		l.swingDegS += swingPart1s * (seen - l.swingDegS)
 		// The rate seen is noisy by the compass over the interval, the rate
 		// reckoned by what the helmsman does: each has half a say. Our choice.
 		l.est.RateDegS = (seen + reckoned.RateDegS) / 2
@@ -102,12 +103,28 @@ func (l *Live) sensePosition(o Sensed, dt float64) {
 		return
 	}
 	at := nav.NewPlane(datum).Offset(fix.Position)
-	if !l.jump.accepts(at, nav.Offset{EastM: l.est.EastM, NorthM: l.est.NorthM}, l.c.Model.SpeedMs, dt) {
+	reckoned := nav.Offset{EastM: l.est.EastM, NorthM: l.est.NorthM}
+	first := !l.jump.seen
+	off := at.Sub(reckoned)
+	switch {
+	case !l.jump.accepts(at, reckoned, l.c.Model.SpeedMs, dt):
 		l.doubt(PositionJumped)
 		return
+	case !first && dt <= fixAgeS && off.RangeM() < jumpM:
+		at = reckoned.Add(off.Scale(fixPart))
 	}
 	l.est.EastM, l.est.NorthM = at.EastM, at.NorthM
 }
+
+// swingPart1s is the weight of a rate seen: of a compass noisy by 2 degrees it
+// leaves about 1 degree a second. Our choice.
+const swingPart1s = 0.3
+
+// fixPart is the weight of a fix against the place reckoned from the one
+// before: it halves the noise of a receiver from second to second, which
+// would else look like a pass or swing the bearing close by, and follows a
+// steady difference within some seconds. Our choice.
+const fixPart = 0.4
 
 // jumpGate holds back a position that no vessel can have got to since the
 // last. It gives way when jumpAgree positions running agree with one another:

@@ -45,6 +45,6 @@ func (w *PassWatch) Add(rangeM, radiusM float64) bool {
 	return true
 }
 
-// passNearM is the range at which the recovery card opens, a tenth of a
-// nautical mile: whatever comes nearer than that was an approach.
-const passNearM = 185.2
+// passNearM is the range within which a pass counts also for a vessel that
+// turns on the spot; our choice, a few boat's lengths and the error of a fix.
+const passNearM = 50
