@@ -105,15 +105,36 @@ func (c Case) validateStart() error {
 		return nil
 	}
 	plane := c.plane()
-	for _, f := range c.Start.Path.Fixes() {
+	for _, f := range c.pathFixes() {
 		if err := f.Position.Validate(); err != nil {
 			return fmt.Errorf("%w: path: %w", ErrCase, err)
+		}
+		if e, ok := f.ErrorM.Get(); ok && !(e >= 0 && finite(e)) {
+			return fmt.Errorf("%w: path: expected errors in metres, not negative", ErrCase)
 		}
 		if !(plane.Offset(f.Position).RangeM() <= maxPlaneM) {
 			return fmt.Errorf("%w: path: expected within %d km of its middle", ErrCase, maxPlaneM/1000)
 		}
 	}
 	return nil
+}
+
+// maxPathFixes is how many fixes of a path are used. Our choice, because a watch
+// of four hours then has one every 7 seconds, 22 m at 6 knots.
+const maxPathFixes = 2000
+
+// pathFixes are the fixes of the time of the fall, both its ends included,
+// thinned evenly where they are many.
+func (c Case) pathFixes() []nav.Fix {
+	first, last := pathAt(c.Start.Path, c.FellFrom), pathAt(c.Start.Path, c.FellTo)
+	first.At, last.At = c.FellFrom, c.FellTo
+	between := c.Start.Path.Between(c.FellFrom, c.FellTo)
+	every := len(between)/maxPathFixes + 1
+	out := []nav.Fix{first}
+	for i := 0; i < len(between); i += every {
+		out = append(out, between[i])
+	}
+	return append(out, last)
 }
 
 // maxPlaneM bounds a path. At this range from the middle, distances across are

@@ -54,14 +54,10 @@ type flatFix struct {
 // flatten brings the fixes that matter into the plane.
 func flatten(c Case, plane nav.Plane) flatPath {
 	var path flatPath
-	add := func(f nav.Fix, t float64) {
-		path = append(path, flatFix{t, plane.Offset(f.Position), f.ErrorM.Or(c.Start.error95M()) / Radius95})
+	for _, f := range c.pathFixes() {
+		sd := f.ErrorM.Or(c.Start.error95M()) / Radius95
+		path = append(path, flatFix{f.At.Sub(c.FellFrom).Seconds(), plane.Offset(f.Position), sd})
 	}
-	add(pathAt(c.Start.Path, c.FellFrom), 0)
-	for _, f := range c.Start.Path.Between(c.FellFrom, c.FellTo) {
-		add(f, f.At.Sub(c.FellFrom).Seconds())
-	}
-	add(pathAt(c.Start.Path, c.FellTo), c.FellTo.Sub(c.FellFrom).Seconds())
 	return path
 }
 

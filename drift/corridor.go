@@ -47,7 +47,7 @@ func (c Case) moments() []time.Time {
 	for i := 1; i <= corridorParts; i++ {
 		moments = append(moments, c.FellFrom.Add(window*time.Duration(i)/corridorParts))
 	}
-	fixes := c.Start.Path.Between(c.FellFrom, c.FellTo)
+	fixes := c.pathFixes()
 	every := len(fixes)/corridorFixes + 1
 	for i := 0; i < len(fixes); i += every {
 		moments = append(moments, fixes[i].At)

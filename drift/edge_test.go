@@ -315,6 +315,7 @@ func TestRefusesCases(t *testing.T) {
 		"winds as current": func(c *drift.Case) { c.Currents = c.Winds },
 		"current as winds": func(c *drift.Case) { c.Winds = c.Currents },
 		"path round the world": func(c *drift.Case) {
+			c.FellFrom, c.FellTo = clock("08:00"), clock("12:00")
 			c.Start.Path = nav.NewTrack([]nav.Fix{{At: clock("08:00"), Position: nav.PositionFromDegrees(0, 0)}, {At: clock("12:00"), Position: nav.PositionFromDegrees(0, 90)}})
 		},
 	} {

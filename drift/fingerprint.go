@@ -1,6 +1,10 @@
 package drift
 
-import "math"
+import (
+	"math"
+
+	"wakeback/drift/nav"
+)
 
 // The past of a cloud is hashed, so that new inputs can be compared with those
 // it was made of. Only hashes of one machine are compared, and a clash (one in
@@ -28,7 +32,7 @@ func (c Case) fingerprint() uint64 {
 	h := hash(fnvOffset)
 	h = h.word(uint64(c.FellFrom.UnixNano())).word(uint64(c.FellTo.UnixNano()))
 	h = h.float(c.Start.Position.LatDeg()).float(c.Start.Position.LonDeg()).float(c.Start.error95M())
-	for _, f := range c.Start.Path.Fixes() {
+	for _, f := range c.startFixes() {
 		h = h.word(uint64(f.At.UnixNano())).float(f.Position.LatDeg()).float(f.Position.LonDeg()).float(f.ErrorM.Or(-1))
 	}
 	k := c.Class
@@ -42,6 +46,14 @@ func (c Case) fingerprint() uint64 {
 		h = h.word(c.Coast.Fingerprint())
 	}
 	return uint64(h)
+}
+
+// startFixes are the fixes a case starts from, none for a point.
+func (c Case) startFixes() []nav.Fix {
+	if !c.Start.Corridor() {
+		return nil
+	}
+	return c.pathFixes()
 }
 
 // pastOf is the hash of a case's past, as far as the cloud has come.

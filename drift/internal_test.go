@@ -91,3 +91,70 @@ func TestStreamsAreApart(t *testing.T) {
 		}
 	}
 }
+
+// A row filled in from the report is used, without touching code.
+func TestFilledInRow(t *testing.T) {
+	const head = "# note\nid,...\n"
+	classes, err := parseClasses(head + "x,X,Something,1.5,0.1,20,1.1,3.6,6,0.4,0.1,4,-0.5,-0.2,5,2,14,6,A report\n")
+	if err != nil || len(classes) != 1 {
+		t.Fatal(classes, err)
+	}
+	c := classes[0]
+	k, ok := c.Components.Get()
+	if !ok || c.Derived() || c.Source != "A report" || c.WindMaxMs.Or(0) != 14 || c.JibesPerHour != 0.06 {
+		t.Errorf("class %+v", c)
+	}
+	want := Components{Regression{0.011, 0.036, 0.06}, Regression{0.004, 0.001, 0.04}, Regression{-0.005, -0.002, 0.05}}
+	for i, pair := range [][2]Regression{{k.Downwind, want.Downwind}, {k.Right, want.Right}, {k.Left, want.Left}} {
+		got, w := pair[0], pair[1]
+		if math.Abs(got.Slope-w.Slope)+math.Abs(got.OffsetMs-w.OffsetMs)+math.Abs(got.SyxMs-w.SyxMs) > 1e-12 {
+			t.Errorf("regression %d = %v, want %v", i, got, w)
+		}
+	}
+	for name, row := range map[string]string{
+		"half filled in":          "x,X,Something,1.5,0.1,20,1.1,3.6,,,,,,,,,,,\n",
+		"a word":                  "x,X,Something,much,0.1,20,,,,,,,,,,,,,\n",
+		"endless":                 "x,X,Something,Inf,0.1,20,,,,,,,,,,,,,\n",
+		"columns":                 "x,X,Something,1.5,0.1,20\n",
+		"percent as share of one": "x,X,Something,150,0.1,20,,,,,,,,,,,,,\n",
+		"twice":                   "x,X,Something,1.5,0.1,20,,,,,,,,,,,,,\nx,X,Something,1.5,0.1,20,,,,,,,,,,,,,\n",
+	} {
+		if _, err := parseClasses(head + row); err == nil {
+			t.Errorf("%s is taken", name)
+		}
+	}
+}
+
+func FuzzParseClasses(f *testing.F) {
+	f.Add(leewayCSV)
+	f.Add("#\nid\nx,X,S,1.5,0.1,20,1.1,3.6,6,0.4,0.1,4,-0.5,-0.2,5,2,14,6,A\n")
+	f.Add("id\n,,,,,,,,,,,,,,,,,,\n")
+	f.Fuzz(func(t *testing.T, text string) {
+		classes, err := parseClasses(text)
+		if err != nil {
+			return
+		}
+		for _, c := range classes {
+			if err := c.Validate(); err != nil {
+				t.Fatal(err)
+			}
+			if v := c.SpeedMs(10); !(v >= 0 && v < 10) {
+				t.Fatalf("%q makes %v m/s in 10 m/s", c.ID, v)
+			}
+		}
+	})
+}
+
+func FuzzParseCold(f *testing.F) {
+	f.Add(coldwaterCSV)
+	f.Add("#\nwhat\nhalf,5,5,worn,60,60,S\nhalf,10,10,worn,,,S\n")
+	f.Fuzz(func(t *testing.T, text string) {
+		rows, err := parseCold(text)
+		if err != nil {
+			return
+		}
+		for _, c := range []float64{-2, 0, 7.5, 30} {
+			spanned(figuresOf(rows, c, FlotationUnknown), "survival", "half")
+		}
+	})
+}

@@ -249,3 +249,19 @@ func FuzzParseCSV(f *testing.F) {
 		}
 	})
 }
+
+func TestHourlyStreams(t *testing.T) {
+	tide := Tide{RangeM: 5, NeapRangeM: 2.4, SpringRangeM: 5}
+	got, err := HourlyStreams(at("12:00"), -1, []Stream{{80, 0.5, 1.2}, {80, 0, 0}, {260, 0.4, 1}}, tide, "atlas")
+	if err != nil || len(got) != 3 {
+		t.Fatal(got, err)
+	}
+	h := mustCurrents(t, got...)
+	for when, kn := range map[string]float64{"11:00": 1.2, "11:30": 0.6, "12:00": 0, "12:30": 0.5, "13:00": 1} {
+		v, _ := h.At(at(when)).Get()
+		near(t, "kn at "+when, v.Velocity.SpeedKn(), kn, 1e-9)
+	}
+	if _, err := HourlyStreams(at("12:00"), -1, []Stream{{80, 0.5, 1.2}}, Tide{}, ""); !errors.Is(err, ErrTide) {
+		t.Errorf("no ranges: %v", err)
+	}
+}

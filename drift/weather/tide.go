@@ -3,6 +3,7 @@ package weather
 import (
 	"errors"
 	"math"
+	"time"
 
 	"wakeback/drift/nav"
 )
@@ -28,4 +29,22 @@ func (s Stream) Velocity(t Tide) (nav.Velocity, error) {
 	}
 	kn := s.NeapKn + (s.SpringKn-s.NeapKn)*(t.RangeM-t.NeapRangeM)/(t.SpringRangeM-t.NeapRangeM)
 	return nav.Towards(s.Set, math.Max(kn, 0)), nil
+}
+
+// HourlyStreams are the samples of an atlas with a chart for each hour: the
+// first is for firstHour hours after high water (negative before it), each
+// other for an hour later.
+func HourlyStreams(highWater time.Time, firstHour int, streams []Stream, t Tide, name string) ([]Sample, error) {
+	samples := make([]Sample, len(streams))
+	for i, s := range streams {
+		v, err := s.Velocity(t)
+		if err != nil {
+			return nil, err
+		}
+		samples[i] = Sample{
+			From: highWater.Add(time.Duration(firstHour+i) * time.Hour), Velocity: v,
+			Source: Tables, Name: name, Said: highWater,
+		}
+	}
+	return samples, nil
 }
