@@ -139,7 +139,7 @@ export const stories = {
   "the first load is under 60 kB gzipped, without engine and plot": async (s) => {
     const dist = new URL("../../dist", import.meta.url).pathname;
     const walk = (f) => readdirSync(f).flatMap((n) => (statSync(join(f, n)).isDirectory() ? walk(join(f, n)) : [join(f, n)]));
-    const files = walk(dist).filter((f) => !/engine\.wasm|wasm_exec|plot|\.gz$|\.keep$|icon-\d+\.png$/.test(f));
+    const files = walk(dist).filter((f) => !/engine\.wasm|wasm_exec|plot|\.gz$|\.keep$/.test(f));
     const total = files.reduce((sum, f) => sum + gzipSync(readFileSync(f), { level: 9 }).length, 0);
     const boot = files.filter((f) => /index[-.]|palette/.test(f)).reduce((sum, f) => sum + gzipSync(readFileSync(f), { level: 9 }).length, 0);
     assert(total < 60_000, `${total} bytes`);

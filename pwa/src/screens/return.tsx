@@ -24,6 +24,7 @@ export function Return({ selection }: { selection: Selection }) {
     selection,
     nowMs: commonNow(),
     ringUp: m.ringUp.value,
+    phoneMagDeg: phonePoints(now),
   });
   useSenses(shown.held?.frame ?? null, view);
   return (
@@ -42,6 +43,14 @@ export function Return({ selection }: { selection: Selection }) {
       <Sheets selection={selection} />
     </main>
   );
+}
+
+/** A compass that fell silent is not believed for longer: our choice, as for the vessel's. */
+const COMPASS_FRESH_MS = 3_000;
+
+function phonePoints(nowMs: number): number | null {
+  const heading = m.phoneHeading.value.heading;
+  return heading && nowMs - heading.at_ms <= COMPASS_FRESH_MS ? heading.mag_deg : null;
 }
 
 function Top({ view, selection, own }: { view: ReturnView; selection: Selection; own: boolean }) {

@@ -154,6 +154,8 @@ function Aboard({ selection }: { selection: Selection }) {
   );
 }
 
+const NEXT_UP = { head_up: "north_up", north_up: "phone_up", phone_up: "head_up" } as const;
+
 function More({ selection }: { selection: Selection }) {
   const [text, setText] = useState("");
   const { state, person } = selection;
@@ -167,8 +169,8 @@ function More({ selection }: { selection: Selection }) {
         {out && <button type="button" onClick={() => void act.missedPass(selection).then(close)}>{t("people.missed")}</button>}
         <button type="button" data-mark="person" data-person={person?.no ?? 1}>{t("mark.again")}</button>
         <button type="button" onClick={go("log")}>{t("more.log")}</button>
-        <button type="button" onClick={() => act.chooseRing(m.ringUp.value === "head_up" ? "north_up" : "head_up")}>
-          {t(m.ringUp.value === "head_up" ? "more.north_up" : "more.head_up")}
+        <button type="button" onClick={() => act.chooseRing(NEXT_UP[m.ringUp.value])}>
+          {t(`more.${NEXT_UP[m.ringUp.value]}`)}
         </button>
         <button type="button" aria-pressed={m.speech.value} onClick={() => act.chooseSpeech(!m.speech.value)}>
           {t(m.speech.value ? "more.silence" : "more.speak")}

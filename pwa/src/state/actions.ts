@@ -2,6 +2,7 @@
 
 import { signal } from "@preact/signals";
 import { EngineError } from "../engine/engine";
+import { headingState, phoneHeading, startHeading } from "../sense/heading";
 import { markedNow } from "../sense/position";
 import { commonNow } from "../sync/clock";
 import { t } from "../text/text";
@@ -186,6 +187,9 @@ export function choosePalette(p: m.Palette): void {
 
 export function chooseRing(up: m.RingUp): void {
   m.ringUp.value = up;
+  if (up === "phone_up") {
+    void startHeading(() => (m.phoneHeading.value = { state: headingState(), heading: phoneHeading() }));
+  }
   m.store("wakeback.ring", up);
 }
 

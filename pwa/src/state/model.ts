@@ -3,6 +3,7 @@
 
 import { signal } from "@preact/signals";
 import type { EngineState } from "../engine/engine";
+import type { HeadingState, PhoneHeading } from "../sense/heading";
 import type { HeldFix, PhoneState } from "../sense/position";
 import type { SoundState } from "../sense/sound";
 import type { StorageState } from "../sense/storage";
@@ -11,7 +12,7 @@ import type { LogEvent } from "../wire/event";
 import type { Frame, State } from "../wire/frame";
 
 export type Palette = "day" | "dusk" | "night";
-export type RingUp = "head_up" | "north_up";
+export type RingUp = "head_up" | "north_up" | "phone_up";
 export type Sheet = "" | "when" | "call" | "more" | "aboard" | "down" | "log" | "setup";
 
 /** A frame with the moment it reached this page. */
@@ -66,7 +67,9 @@ export const lastAct = signal<{ id: string; key: string; ms: number; undoable: b
 export const notice = signal("");
 
 export const palette = signal<Palette>(readPalette());
+/** The phone's compass is not carried over a restart: it has to be started by a touch. */
 export const ringUp = signal<RingUp>(stored("wakeback.ring") === "north_up" ? "north_up" : "head_up");
+export const phoneHeading = signal<{ state: HeadingState; heading: PhoneHeading | null }>({ state: "off", heading: null });
 export const speech = signal(stored("wakeback.speech") !== "off");
 export const myName = signal(stored("wakeback.name") ?? "");
 export const drill = signal(stored("wakeback.drill") === "on");

@@ -77,6 +77,12 @@ describe("returnView", () => {
     expect(v.order).toBe("Steer 283");
   });
 
+  test("turned by the phone's compass: magnetic plus variation, and said so", () => {
+    const phone = { ...input, ringUp: "phone_up" as const };
+    expect(returnView({ ...phone, phoneMagDeg: 279 }).ring).toMatchObject({ wedge: { centreDeg: 2 }, up: "This phone's way is up" });
+    expect(returnView({ ...phone, phoneMagDeg: null }).ring).toMatchObject({ northDeg: 0, up: "North is up: no compass" });
+  });
+
   test("an error as large as the range is a full ring and a look all round", () => {
     const near: Frame = { ...frame, range_m: 50, wedge_deg: 180, do: { code: "look_all_round", range_m: 50 } };
     const v = returnView({ ...input, frame: near });

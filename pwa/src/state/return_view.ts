@@ -15,7 +15,9 @@ export interface ReturnInput {
   selection: Selection;
   /** Common clock, Unix milliseconds. */
   nowMs: number;
-  ringUp: "head_up" | "north_up";
+  ringUp: "head_up" | "north_up" | "phone_up";
+  /** Where this phone points, degrees magnetic; null when its compass is silent. */
+  phoneMagDeg?: number | null;
 }
 
 /** One of the two things that never look alike. */
@@ -196,11 +198,21 @@ function minute(at: string | null | undefined): string {
 /** Ring sizes, so that the picture jumps rarely instead of creeping always: our choice. */
 const RING_M = [50, 100, 200, 400, 1000, 1852, 3704, 9260, 18520, 46300, 92600, 185200];
 
-function ringView({ frame, ringUp }: ReturnInput, direction: string | null): RingView {
+/** What is up: the direction, degrees true, and its words. */
+function upOf({ frame, ringUp, phoneMagDeg }: ReturnInput, heading: number | null): { turn: number; up: string } {
+  if (ringUp === "north_up") return { turn: 0, up: t("return.north_up") };
+  if (ringUp === "head_up") {
+    return heading === null ? { turn: 0, up: t("return.no_heading") } : { turn: heading, up: t("return.head_up") };
+  }
+  const variation = frame?.variation_deg;
+  if (phoneMagDeg == null || variation == null) return { turn: 0, up: t("return.no_compass") };
+  return { turn: phoneMagDeg + variation, up: t("return.phone_up") };
+}
+
+function ringView(input: ReturnInput, direction: string | null): RingView {
+  const { frame } = input;
   const heading = frame?.heading_deg ?? headingFrom(frame);
-  const headUp = ringUp === "head_up" && heading != null;
-  const turn = headUp ? (heading as number) : 0;
-  const up = headUp ? t("return.head_up") : ringUp === "head_up" ? t("return.no_heading") : t("return.north_up");
+  const { turn, up } = upOf(input, heading);
   const at = (deg: number): number => (((deg - turn) % 360) + 360) % 360;
   const place = frame ? places(frame) : null;
   const farM = Math.max(place?.look?.m ?? 0, place?.mark?.m ?? 0);
