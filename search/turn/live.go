@@ -52,7 +52,7 @@ type Advice struct {
 	Stage     int     `json:"stage"`  // of the manoeuvre's orders, from 0; their number when all are done
 	Passes    int     `json:"passes"` // missed so far
 
-	Doubts []Doubt `json:"doubts"`
+	Doubts []Doubt `json:"doubts,omitempty"`
 }
 
 // Doubt is a reason to trust the advice less.
@@ -242,7 +242,7 @@ func (l *Live) done(ph phase) bool {
 		return math.Abs(relative) >= ph.abaftDeg
 	}
 	if l.comingAtThem() {
-		if rangeM, relative := l.sight(); math.Abs(relative) < facingDeg && rangeM > l.c.Model.RadiusM {
+		if rangeM, relative := l.sight(); math.Abs(nav.NormSignedDeg(relative-l.swing())) < facingDeg && rangeM > l.c.Model.RadiusM {
 			return true
 		}
 	}
@@ -258,6 +258,10 @@ func (l *Live) comingAtThem() bool {
 	last := l.stage == len(l.phases)-1 || l.stage == len(l.phases)-2 && l.phases[l.stage].code != HelmOver
 	return !l.back && last && math.Abs(change(l.est, l.c.Heading, l.side)) > 90 || l.name == RaceTrack && l.stage == 2
 }
+
+// swing is how far she goes on turning before an order given now is felt: the
+// order's delay, half the rudder's travel and the lag.
+func (l *Live) swing() float64 { return l.est.RateDegS * l.c.Model.answersS() }
 
 // sight is the range of the person and the bearing from the bow.
 func (l *Live) sight() (rangeM, relativeDeg float64) {
@@ -296,7 +300,7 @@ func (l *Live) ordered(a *Advice) {
 	until := l.c.Heading.Add(ph.until * float64(l.side))
 	a.Steer = nav.Some(until)
 	if !ph.hold {
-		h := Helm(ph.helm * float64(l.side))
+		h := ph.to(l.side)
 		a.Helm = nav.Some(h)
 		a.Turn = sideOf(float64(h))
 	}
@@ -305,7 +309,7 @@ func (l *Live) ordered(a *Advice) {
 		then := l.phases[l.stage+1]
 		next.Code = then.code
 		if !then.hold {
-			next.Helm = nav.Some(Helm(then.helm * float64(l.side)))
+			next.Helm = nav.Some(then.to(l.side))
 		}
 	}
 	if !ph.hold {
@@ -329,8 +333,8 @@ func sideOf(v float64) Side {
 // absent when that is beyond the horizon.
 func (l *Live) lookAhead(ph phase) nav.Opt[float64] {
 	ahead := *l
-	order := Helm(ph.helm * float64(l.side))
-	// A fortieth of the time to run one radius turns her by less than two
+	order := ph.to(l.side)
+	// The model's own step but for long turns: a fortieth of the time to run one radius turns her by less than two
 	// degrees a step.
 	dt := math.Max(stepS, math.Min(1, l.c.Model.RadiusM/l.c.Model.SpeedMs/liveParts))
 	for t := 0.0; t < liveHorizonS; t += dt {

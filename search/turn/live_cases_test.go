@@ -220,7 +220,7 @@ func TestLiveTakesAnything(t *testing.T) {
 		n := rapid.SampledFrom([]Name{Single, Williamson, RaceTrack, SlowCircle}).Draw(rt, "name")
 		l := live(t, n, c)
 		at, stage := begun, 0
-		for range 20 {
+		for range 8 {
 			at = at.Add(time.Duration(rapid.IntRange(-5, 90).Draw(rt, "dt")) * time.Second)
 			a := l.Update(anything(rt, at))
 			if a.Stage < stage {

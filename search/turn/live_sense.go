@@ -55,11 +55,13 @@ func (l *Live) senseHeading(o Sensed, was State, dt float64) bool {
 		sogKn = fix.SogKn
 	}
 	speedKn := l.est.SpeedMs / nav.MsPerKn
-	if v, ok := o.StwKn.Get(); ok && v >= 0 {
+	if v, ok := o.StwKn.Get(); ok && plausibleKn(v) {
 		speedKn = v
-	} else if v, ok := sogKn.Get(); ok && v >= 0 {
+	} else if v, ok := sogKn.Get(); ok && plausibleKn(v) {
 		speedKn = v
 	}
+	// The model is one of her approach speed: beyond twice that it says nothing.
+	speedKn = math.Min(speedKn, 2*l.c.Model.SpeedMs/nav.MsPerKn)
 	l.still = speedKn < noWayKn || l.still && speedKn < wayAgainKn
 	l.est.SpeedMs = speedKn * nav.MsPerKn
 
@@ -69,7 +71,7 @@ func (l *Live) senseHeading(o Sensed, was State, dt float64) bool {
 			l.doubt(HeadingByCourse)
 		}
 	}
-	if !ok || math.IsNaN(float64(heading)) {
+	if !ok || !(math.Abs(float64(heading)) <= 720) {
 		l.doubt(HeadingByModel)
 		return false
 	}
@@ -84,6 +86,9 @@ func (l *Live) senseHeading(o Sensed, was State, dt float64) bool {
 	}
 	return true
 }
+
+// plausibleKn reports whether a speed can be that of a vessel.
+func plausibleKn(v float64) bool { return v >= 0 && v <= 100 }
 
 func (l *Live) freshFix(o Sensed) (nav.Fix, bool) {
 	fix, ok := o.Fix.Get()

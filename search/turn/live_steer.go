@@ -79,7 +79,7 @@ func (s *steerer) advise(a *Advice, want nav.TrueDeg, est State, rangeM, relativ
 		s.shown = nav.Some(want)
 	}
 	a.Steer = s.shown
-	a.Turn = s.turn(s.shown.Or(want).Minus(nav.True(est.HeadingDeg)))
+	a.Turn = s.turn(s.shown.Or(want).Minus(nav.True(est.HeadingDeg + est.RateDegS*s.model.answersS())))
 	a.Code = ComeTo
 	if a.Turn == Unknown {
 		a.Code = Steady

@@ -82,9 +82,10 @@ func (v *sloppy) helm() Helm {
 func (v *sloppy) second() {
 	keep := math.Exp(-0.1)
 	v.errDeg = v.errDeg*keep + v.rng.NormFloat64()*helmsmanErrDeg*math.Sqrt(1-keep*keep)
-	for range int(math.Round(1 / stepS)) {
-		v.s = v.m.step(v.s, v.helm(), stepS)
-		v.t += stepS
+	const dt = 0.1 // twice the model's step, for the time of the tests
+	for range int(math.Round(1 / dt)) {
+		v.s = v.m.step(v.s, v.helm(), dt)
+		v.t += dt
 	}
 }
 
@@ -139,36 +140,46 @@ func (v *sloppy) follow(l *Live, spoil func(*Sensed, float64)) outcome {
 	return out
 }
 
+// The orders followed sloppily pass within one turning radius of the drifting
+// datum in at least 95 of 100 runs, on the first pass.
 func TestFollowingTheOrdersComesBack(t *testing.T) {
 	for name, m := range vessels(t) {
 		for _, n := range []Name{Single, Williamson, Scharnow, RaceTrack} {
-			good, worst, tried := 0, 0.0, 0
-			for seed := range uint64(100) {
-				c := Case{
-					Model: m, Side: []Side{Port, Starboard}[seed%2], Heading: nav.True(float64(seed) * 53),
-					PersonDrift: nav.Towards(nav.True(float64(seed)*71), 0.6), Delay: time.Duration(seed%5) * 5 * time.Second,
+			t.Run(name+" "+string(n), func(t *testing.T) {
+				t.Parallel()
+				good, worst := 0, 0.0
+				for seed := range uint64(100) {
+					closest := followed(t, n, m, seed)
+					worst = max(worst, closest)
+					if closest <= m.RadiusM {
+						good++
+					}
 				}
-				if n == Scharnow {
-					c.Delay = time.Duration(4+seed%5) * time.Minute
+				t.Logf("%d of 100, worst %.0f m of a radius of %.0f m", good, worst, m.RadiusM)
+				if good < 95 {
+					t.Errorf("%d of 100 within one radius", good)
 				}
-				l, err := NewLive(n, c, Begun{At: begun})
-				if err != nil {
-					t.Fatal(err)
-				}
-				out := newSloppy(m, c, seed).follow(l, nil)
-				noContradiction(t, n, out.advice)
-				tried++
-				worst = max(worst, out.closestM)
-				if out.closestM <= m.RadiusM {
-					good++
-				}
-			}
-			t.Logf("%s %s: %d of %d, worst %.0f m of a radius of %.0f", name, n, good, tried, worst, m.RadiusM)
-			if good < 95 {
-				t.Errorf("%s %s: %d of %d within one radius", name, n, good, tried)
-			}
+			})
 		}
 	}
+}
+
+// followed is the closest approach of one run.
+func followed(t *testing.T, n Name, m Model, seed uint64) float64 {
+	c := Case{
+		Model: m, Side: []Side{Port, Starboard}[seed%2], Heading: nav.True(float64(seed) * 53),
+		PersonDrift: nav.Towards(nav.True(float64(seed)*71), 0.6), Delay: time.Duration(seed%5) * 5 * time.Second,
+	}
+	if n == Scharnow {
+		c.Delay = time.Duration(4+seed%5) * time.Minute
+	}
+	l, err := NewLive(n, c, Begun{At: begun})
+	if err != nil {
+		t.Fatal(err)
+	}
+	out := newSloppy(m, c, seed).follow(l, nil)
+	noContradiction(t, n, out.advice)
+	return out.closestM
 }
 
 // noContradiction: no order is taken back. Stages only go forwards; within a

@@ -53,6 +53,9 @@ type phase struct {
 	slow     bool // with the engine idling
 }
 
+// to is the helm with the first turn to a side; no minus zero.
+func (ph phase) to(side Side) Helm { return Helm(ph.helm*float64(side) + 0) }
+
 // Textbook angles: IAMSAR Manual vol. III as reprinted (single turn 250,
 // Williamson 60, Scharnow 240, midships 20 short of the reciprocal). Transport
 // Canada TP10038 says of the 60 that it suits many vessels and the exact figure

@@ -58,6 +58,11 @@ func FromRadius(speedKn, radiusM float64) Model {
 	}
 }
 
+// answersS is the time from an order until half of it is felt.
+func (m Model) answersS() float64 {
+	return m.OrderDelayS + m.RudderDeg/m.RudderRate/2 + m.LagS
+}
+
 // Helm is an order for the rudder, from -1 (hard a-port) to +1 (hard a-starboard).
 type Helm float64
 

@@ -84,7 +84,7 @@ const slowPart = 0.5
 
 // phase steers one order until it is done.
 func (r *runner) phase(ph phase) error {
-	helm := Helm(ph.helm * float64(r.side))
+	helm := ph.to(r.side)
 	r.orders = append(r.orders, Order{
 		AtS: r.t, Word: ph.word, Code: ph.code, Helm: helm, UntilOf: ph.until, Until: r.c.Heading.Add(ph.until * float64(r.side)),
 	})
