@@ -18,6 +18,12 @@ var methods = map[string]method{
 	"back":            back,
 	"path":            path,
 	"propose_search":  propose,
+	"cloud":           cloud,
+	"searched":        searched,
+	"cold_water":      water,
+	"classes":         classes,
+	"choose_class":    chooseClass,
+	"daylight":        daylight,
 	"parse_position":  parsePosition,
 	"format_position": formatPosition,
 }

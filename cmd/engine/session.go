@@ -20,6 +20,7 @@ type session struct {
 	states  []incident.State // fold of log; nil when it has to be made anew
 	vessel  source
 	phone   source
+	kept    cloudKept
 	methods map[string]method
 }
 

@@ -143,3 +143,62 @@ func TestProposeSearch(t *testing.T) {
 		t.Errorf("no speed: %+v", p)
 	}
 }
+
+// The cloud is the same on every screen, and goes on from where it was.
+func TestCloud(t *testing.T) {
+	at := func(minutes int) string {
+		return fmt.Sprintf(`{"now":%q,"members":500}`, t0.Add(time.Duration(minutes)*time.Minute).Format(time.RFC3339))
+	}
+	a, b := newSession(), newSession()
+	for _, s := range []*session{a, b} {
+		ask[any](t, s, "add_events", markEvent(t))
+	}
+	ask[cloudOut](t, a, "cloud", at(5))
+	one, other := ask[cloudOut](t, a, "cloud", at(10)), ask[cloudOut](t, b, "cloud", at(10))
+	if one.N != 500 || len(one.Regions) != 2 || len(one.Regions[0].Rings) == 0 || len(one.Points) < 100 {
+		t.Fatalf("cloud = %d members, %d regions, %d points", one.N, len(one.Regions), len(one.Points))
+	}
+	if one.Mean != other.Mean || one.R95M != other.R95M {
+		t.Errorf("two phones differ: %+v and %+v", one.Mean, other.Mean)
+	}
+	if one.R95M <= one.R50M {
+		t.Errorf("r95 %v, r50 %v", one.R95M, one.R50M)
+	}
+}
+
+// Searched is what was run while a leg was being steered, and a leg that is
+// planned is not searched.
+func TestSearched(t *testing.T) {
+	s := newSession()
+	ask[any](t, s, "add_events", markEvent(t))
+	now := t0.Add(20 * time.Minute).Format(time.RFC3339)
+	got := ask[struct{ Proposals []proposalOut }](t, s, "propose_search", fmt.Sprintf(`{"now":%q,"speed_kn":6,"visibility_nm":10}`, t0.Add(10*time.Minute).Format(time.RFC3339)))
+	say := func(n int, kind incident.Kind, minutes float64, body any) incident.EventID {
+		at := t0.Add(time.Duration(minutes * float64(time.Minute)))
+		e, err := incident.New(incident.Event{
+			ID: incident.EventID(fmt.Sprintf("018f3c2e-0000-7000-8000-0000000001%02d", n)), Incident: "018f3c2e-7b1a-7c3d-9e4f-000000000001",
+			Device: "de000000-0000-4000-8000-000000000001", DeviceSeq: uint64(n + 1), At: at, DeviceAt: at,
+		}, kind, body)
+		if err != nil {
+			t.Fatal(err)
+		}
+		text, _ := json.Marshal(map[string]any{"events": []incident.Event{e}})
+		ask[any](t, s, "add_events", string(text))
+		return e.ID
+	}
+	laid := say(1, incident.KindSearchLaid, 10, got.Proposals[0].Body)
+	before := ask[searchedOut](t, s, "searched", fmt.Sprintf(`{"now":%q,"members":500}`, now))
+	if before.RunM != 0 || before.POD.IsSet() || len(before.Runs) != 0 {
+		t.Errorf("a plan counts as searched: %+v", before)
+	}
+	say(2, incident.KindLegBegun, 11, incident.LegBegun{Search: laid, Leg: 1})
+	for i := range 61 { // a minute on the leg
+		ask[any](t, s, "own", fmt.Sprintf(`{"source":"vessel","fix":{"at":%q,"position":{"lat":%f,"lon":7.9},"sog_kn":6,"cog_deg":0}}`,
+			t0.Add(11*time.Minute+time.Duration(i)*time.Second).Format(time.RFC3339), 54.1+float64(i)*3.0867/111_300))
+	}
+	say(3, incident.KindLegEnded, 12, incident.LegEnded{Search: laid, Leg: 1, Part: 0.4, How: "broken_off"})
+	after := ask[searchedOut](t, s, "searched", fmt.Sprintf(`{"now":%q,"members":500}`, now))
+	if after.RunM < 170 || after.RunM > 200 || len(after.Runs) != 60 || after.POD.Or(0) <= 0 || after.POD.Or(1) >= 1 {
+		t.Errorf("searched = %v m, %d pieces, POD %v", after.RunM, len(after.Runs), after.POD)
+	}
+}
