@@ -10,15 +10,15 @@ import (
 
 // Model is how a vessel turns with the helm hard over, at one approach speed.
 type Model struct {
-	SpeedMs     float64 // U0, approach speed through the water
-	RadiusM     float64 // R, of the steady circle
-	LagS        float64 // T, of the yaw rate behind the rudder
-	SpeedRatio  float64 // lambda, steady speed in the turn over approach speed
-	SpeedLagS   float64 // T_U, of the speed
-	PivotM      float64 // p, pivot point ahead of the reference point
-	RudderDeg   float64 // hard over
-	RudderRate  float64 // degrees a second
-	OrderDelayS float64 // from the word to the wheel
+	SpeedMs     float64 `json:"speed_ms"`          // U0, approach speed through the water
+	RadiusM     float64 `json:"radius_m"`          // R, of the steady circle
+	LagS        float64 `json:"lag_s"`             // T, of the yaw rate behind the rudder
+	SpeedRatio  float64 `json:"speed_ratio"`       // lambda, steady speed in the turn over approach speed
+	SpeedLagS   float64 `json:"speed_lag_s"`       // T_U, of the speed
+	PivotM      float64 `json:"pivot_m"`           // p, pivot point ahead of the reference point
+	RudderDeg   float64 `json:"rudder_deg"`        // hard over
+	RudderRate  float64 `json:"rudder_rate_deg_s"` // degrees a second
+	OrderDelayS float64 `json:"order_delay_s"`     // from the word to the wheel
 }
 
 // ErrModel is wrapped when a model cannot be.
