@@ -134,20 +134,20 @@ func putTrack(tx *bbolt.Tx, device incident.DeviceID, fixes []nav.Fix) error {
 func lastBlock(b *bbolt.Bucket, device incident.DeviceID) (key []byte, fixes []nav.Fix) {
 	c := b.Cursor()
 	prefix := []byte(string(device) + "\x00")
-	k, v := c.Seek([]byte(string(device) + "\x01"))
-	if k == nil {
-		k, v = c.Last()
+	var v []byte
+	if k, _ := c.Seek([]byte(string(device) + "\x01")); k == nil {
+		key, v = c.Last()
 	} else {
-		k, v = c.Prev()
+		key, v = c.Prev()
 	}
-	if k == nil || !bytes.HasPrefix(k, prefix) {
+	if key == nil || !bytes.HasPrefix(key, prefix) {
 		return nil, nil
 	}
 	fixes, err := decodeFixes(v)
 	if err != nil || len(fixes) == 0 {
 		return nil, nil
 	}
-	return append([]byte(nil), k...), fixes
+	return append([]byte(nil), key...), fixes
 }
 
 func readTracks(tx *bbolt.Tx) error {
