@@ -294,7 +294,7 @@ func TestSystemCallsFail(t *testing.T) {
 		t.Skip("strace is not installed: it injects the faults")
 	}
 	for _, fault := range []string{
-		"fdatasync:error=EIO:when=20+", "fsync:error=EIO:when=20+", "pwrite64:error=ENOSPC:when=60+"
+		"fdatasync:error=EIO:when=20+", "fsync:error=EIO:when=20+", "pwrite64:error=ENOSPC:when=60+",
 	} {
 		call, _, _ := strings.Cut(fault, ":")
 		dir := t.TempDir()
