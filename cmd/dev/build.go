@@ -59,8 +59,13 @@ func packages(ctx context.Context) error {
 	return cmd("npm", "ci", "--no-audit", "--no-fund").in("pwa").run(ctx)
 }
 
+var pageSources = []string{
+	"pwa/src", "pwa/public", "pwa/script/finish.mjs", "pwa/index.html", "pwa/package-lock.json", "pwa/vite.config.ts", "pwa/tsconfig.json",
+}
+
 func buildPage(ctx context.Context) error {
-	if fresh("pwa/dist/index.html", "pwa/src", "pwa/public", "pwa/script", "pwa/index.html", "pwa/package-lock.json", "pwa/vite.config.ts") {
+	// The last step of the page's build touches the second of these.
+	if fresh("pwa/dist/index.html", pageSources...) && fresh("pwa/dist/.keep", pageSources...) {
 		return nil
 	}
 	if err := packages(ctx); err != nil {
@@ -93,17 +98,18 @@ func fresh(target string, sources ...string) bool {
 	return true
 }
 
-// newest is when the youngest file of a tree was changed.
+// newest is when the youngest file or folder of a tree was changed: what was
+// removed changes the folder.
 func newest(root string) time.Time {
 	var at time.Time
 	_ = filepath.WalkDir(root, func(path string, d fs.DirEntry, err error) error {
-		if err != nil || strings.HasSuffix(path, "_test.go") {
+		if err != nil || strings.HasSuffix(path, "_test.go") || strings.Contains(path, ".test.ts") {
 			return nil
 		}
 		if d.IsDir() && (d.Name() == "node_modules" || d.Name() == "testdata") {
 			return fs.SkipDir
 		}
-		if info, err := d.Info(); err == nil && !d.IsDir() && info.ModTime().After(at) {
+		if info, err := d.Info(); err == nil && info.ModTime().After(at) {
 			at = info.ModTime()
 		}
 		return nil
@@ -126,19 +132,4 @@ func copyFile(from, to string) error {
 		return fmt.Errorf("copy %s to %s: %w", from, to, err)
 	}
 	return out.Close()
-}
-
-// serveDemo builds what is missing and starts the demonstration.
-func serveDemo(ctx context.Context, args []string) error {
-	if err := build(ctx); err != nil {
-		return err
-	}
-	c := cmd(programBin, append([]string{"serve", "--demo"}, args...)...)
-	x := c.exec(ctx)
-	x.Stdin, x.Stdout, x.Stderr = os.Stdin, os.Stdout, os.Stderr
-	err := x.Run()
-	if ctx.Err() != nil {
-		return nil // stopped by hand
-	}
-	return err
 }

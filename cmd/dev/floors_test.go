@@ -25,9 +25,11 @@ var floors = [][]string{
 	{"search/plan"},
 	{"search/advice"},
 	{"search/drill"},
-	{"server/store", "server/hub", "server/feed", "server/gate", "server/report", "server/demo"},
+	{"server/store", "server/hub", "server/feed", "server/gate", "server/report"},
+	{"server/demo"},
 	{"server"},
-	{"cmd", "pwa"},
+	{"pwa"},
+	{"cmd"},
 }
 
 // floorOf is the floor of a package and the name under which it stands there.

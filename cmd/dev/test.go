@@ -2,7 +2,10 @@ package main
 
 import (
 	"context"
+	"errors"
+	"flag"
 	"fmt"
+	"io"
 	"os"
 	"slices"
 	"strings"
@@ -13,64 +16,114 @@ import (
 type step struct {
 	name string
 	what string
-	run  func(context.Context) error
+	slow bool // left out by -fast
+	run  func(context.Context, options) error
 }
 
-// steps in the order of what fails fastest.
+// options are how to test.
+type options struct {
+	fast bool
+	// strict: what is missing on the machine fails the run instead of leaving a
+	// step out. It is so where a machine tests by itself (CI=true).
+	strict bool
+}
+
+// steps in the order of what fails soonest.
 var steps = []step{
-	{"install", "programs that tests need", install},
-	{"format", "gofmt", checkFormat},
-	{"vet", "go vet and staticcheck", vet},
-	{"engine", "drift and search for js/wasm", buildEngine},
-	{"page", "types, lint and unit tests of the page", checkPage},
-	{"build", "page and program", build},
-	{"go", "all Go tests, with the race detector", goTests},
-	{"fuzz", "every fuzz target for a moment", fuzz},
-	{"browser", "the page in a real browser, against the real program", browser},
+	{"install", "programs that the tests need", false, install},
+	{"format", "gofmt", false, checkFormat},
+	{"vet", "go vet and staticcheck", false, vet},
+	{"engine", "drift and search for js/wasm", false, checkEngine},
+	{"page", "types, lint and unit tests of the page", false, checkPage},
+	{"build", "engine, page and program", false, func(ctx context.Context, _ options) error { return build(ctx) }},
+	{"go", "Go tests, with the race detector unless -fast", false, goTests},
+	{"fuzz", "every fuzz target for a moment", true, fuzz},
+	{"browser", "the page in a real browser", true, browser},
 }
 
-// test runs all steps, or those named, to the end, and counts.
-func test(ctx context.Context, names []string) error {
-	for _, n := range names {
-		if !slices.ContainsFunc(steps, func(s step) bool { return s.name == n }) {
-			return fmt.Errorf("no step %q; there are %s", n, stepNames())
-		}
+// errSkipped is wrapped by a step that the machine does not allow.
+var errSkipped = errors.New("left out")
+
+type result struct {
+	step
+	err  error
+	took time.Duration
+}
+
+func (r result) verdict() string {
+	switch {
+	case r.err == nil:
+		return "ok"
+	case errors.Is(r.err, errSkipped):
+		return "left out"
 	}
-	type result struct {
-		step
-		err  error
-		took time.Duration
+	return "FAILED"
+}
+
+// test runs the steps to the end and counts.
+func test(ctx context.Context, args []string) error {
+	chosen, opt, err := choose(args)
+	if err != nil {
+		return err
 	}
+	began := time.Now()
 	var results []result
-	for _, s := range steps {
-		if len(names) > 0 && !slices.Contains(names, s.name) {
-			continue
-		}
+	for _, s := range chosen {
 		fmt.Printf("\n== %s: %s\n", s.name, s.what)
 		begin := time.Now()
-		err := s.run(ctx)
+		err := s.run(ctx, opt)
+		if ctx.Err() != nil {
+			return errors.New("stopped")
+		}
 		if err != nil {
 			fmt.Println(err)
 		}
 		results = append(results, result{s, err, time.Since(begin)})
-		if ctx.Err() != nil {
-			return ctx.Err()
+	}
+	return summary(os.Stdout, results, time.Since(began))
+}
+
+// choose reads the flags and the names of steps.
+func choose(args []string) ([]step, options, error) {
+	flags := flag.NewFlagSet("test", flag.ContinueOnError)
+	only := flags.String("only", "", "steps to run, separated by commas: "+stepNames())
+	fast := flags.Bool("fast", false, "leave out the slow steps and the race detector")
+	if err := flags.Parse(args); err != nil {
+		return nil, options{}, err
+	}
+	names := flags.Args()
+	if *only != "" {
+		names = append(names, strings.Split(*only, ",")...)
+	}
+	for _, n := range names {
+		if !slices.ContainsFunc(steps, func(s step) bool { return s.name == n }) {
+			return nil, options{}, fmt.Errorf("no step %q; there are %s", n, stepNames())
 		}
 	}
-	fmt.Println()
-	passed := 0
+	var chosen []step
+	for _, s := range steps {
+		if slices.Contains(names, s.name) || len(names) == 0 && !(*fast && s.slow) {
+			chosen = append(chosen, s)
+		}
+	}
+	ci := os.Getenv("CI")
+	return chosen, options{fast: *fast, strict: ci != "" && ci != "false" && ci != "0"}, nil
+}
+
+func summary(w io.Writer, results []result, took time.Duration) error {
+	fmt.Fprintln(w)
+	count := map[string]int{}
 	for _, r := range results {
-		verdict := "ok"
-		if r.err != nil {
-			verdict = "FAILED"
-		} else {
-			passed++
-		}
-		fmt.Printf("%-8s %-7s %6.1f s  %s\n", r.name, verdict, r.took.Seconds(), r.what)
+		count[r.verdict()]++
+		fmt.Fprintf(w, "%-8s  %-8s  %6.1f s  %s\n", r.name, r.verdict(), r.took.Seconds(), r.what)
 	}
-	fmt.Printf("%d passed, %d failed\n", passed, len(results)-passed)
-	if passed < len(results) {
-		return fmt.Errorf("%d of %d steps failed", len(results)-passed, len(results))
+	fmt.Fprintf(w, "in all %.0f s", took.Seconds())
+	if n := count["left out"]; n > 0 {
+		fmt.Fprintf(w, ", %d left out", n)
+	}
+	fmt.Fprintf(w, "\n%d passed, %d failed\n", count["ok"], count["FAILED"])
+	if n := count["FAILED"]; n > 0 {
+		return fmt.Errorf("%d of %d steps failed", n, len(results))
 	}
 	return nil
 }
@@ -81,86 +134,4 @@ func stepNames() string {
 		names = append(names, s.name)
 	}
 	return strings.Join(names, ", ")
-}
-
-func checkFormat(ctx context.Context) error {
-	out, err := cmd("gofmt", "-l", "cmd", "drift", "search", "server", "pwa/pwa.go").output(ctx)
-	if err != nil {
-		return err
-	}
-	if out != "" {
-		return fmt.Errorf("gofmt would change:\n%s", out)
-	}
-	return nil
-}
-
-func vet(ctx context.Context) error {
-	if err := cmd("go", "vet", "./...").run(ctx); err != nil {
-		return err
-	}
-	return cmd("go", "tool", "staticcheck", "./...").run(ctx)
-}
-
-func checkPage(ctx context.Context) error {
-	if err := packages(ctx); err != nil {
-		return err
-	}
-	if err := cmd("npm", "run", "--silent", "check").in("pwa").run(ctx); err != nil {
-		return err
-	}
-	return cmd("npm", "test", "--silent").in("pwa").run(ctx)
-}
-
-func goTests(ctx context.Context) error {
-	return cmd("go", "test", "-race", "-timeout", "8m", "./...").run(ctx)
-}
-
-// fuzzTime is how long each target runs: enough to meet the seeds and their
-// nearest neighbours.
-const fuzzTime = "2s"
-
-// fuzz runs every fuzz target of every package, each for a moment.
-func fuzz(ctx context.Context) error {
-	out, err := cmd("go", "list", "-f", "{{if or .TestGoFiles .XTestGoFiles}}{{.ImportPath}}{{end}}", "./...").output(ctx)
-	if err != nil {
-		return err
-	}
-	for _, pkg := range strings.Fields(out) {
-		list, err := cmd("go", "test", "-list", "^Fuzz", pkg).output(ctx)
-		if err != nil {
-			return err
-		}
-		for _, target := range strings.Fields(list) {
-			if !strings.HasPrefix(target, "Fuzz") {
-				continue
-			}
-			c := cmd("go", "test", "-run", "^$", "-fuzz", "^"+target+"$", "-fuzztime", fuzzTime, "-parallel", "2", pkg)
-			if out, err := c.output(ctx); err != nil {
-				fmt.Print(out)
-				return err
-			}
-			fmt.Printf("ok %s %s\n", pkg, target)
-		}
-	}
-	return nil
-}
-
-func browser(ctx context.Context) error {
-	if err := build(ctx); err != nil {
-		return err
-	}
-	program, err := os.Getwd()
-	if err != nil {
-		return err
-	}
-	return cmd("npm", "run", "--silent", "e2e").in("pwa").with("WAKEBACK=" + program + "/" + programBin).run(ctx)
-}
-
-// bench prints the benchmarks that match.
-func bench(ctx context.Context, args []string) error {
-	pattern := "."
-	if len(args) > 0 {
-		pattern = args[0]
-	}
-	return cmd("go", "test", "-run", "^$", "-bench", pattern, "-benchmem", "./...").run(ctx)
 }

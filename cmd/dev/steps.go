@@ -1,0 +1,71 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"os"
+	"path/filepath"
+)
+
+func checkFormat(ctx context.Context, _ options) error {
+	out, err := cmd("gofmt", "-l", "cmd", "drift", "search", "server", "pwa/pwa.go").output(ctx)
+	if err != nil {
+		return err
+	}
+	if out != "" {
+		return fmt.Errorf("gofmt would change:\n%s", out)
+	}
+	return nil
+}
+
+func vet(ctx context.Context, _ options) error {
+	if err := cmd("go", "vet", "./...").run(ctx); err != nil {
+		return err
+	}
+	return cmd("go", "tool", "staticcheck", "./...").run(ctx)
+}
+
+// checkEngine builds every package of the engine for the page, those too that
+// the page does not use yet.
+func checkEngine(ctx context.Context, _ options) error {
+	js := []string{"GOOS=js", "GOARCH=wasm"}
+	if err := cmd("go", "build", "./drift/...", "./search/...").with(js...).run(ctx); err != nil {
+		return err
+	}
+	return buildEngine(ctx)
+}
+
+func checkPage(ctx context.Context, _ options) error {
+	if err := packages(ctx); err != nil {
+		return err
+	}
+	if err := cmd("npm", "run", "--silent", "check").in("pwa").run(ctx); err != nil {
+		return err
+	}
+	return cmd("npm", "test", "--silent").in("pwa").run(ctx)
+}
+
+// goTests runs everything beside the code. The limit is for a test that
+// hangs; the whole takes a fraction of it.
+func goTests(ctx context.Context, opt options) error {
+	args := []string{"test", "-timeout", "6m"}
+	if !opt.fast {
+		args = append(args, "-race")
+	}
+	return cmd("go", append(args, "./...")...).run(ctx)
+}
+
+// browser runs the page's stories against a stand-in and against the program.
+func browser(ctx context.Context, opt options) error {
+	if !have("chromium") && !opt.strict {
+		return fmt.Errorf("%w: no chromium on this machine (Debian package chromium)", errSkipped)
+	}
+	if err := build(ctx); err != nil {
+		return err
+	}
+	root, err := os.Getwd()
+	if err != nil {
+		return fmt.Errorf("find the program: %w", err)
+	}
+	return cmd("npm", "run", "--silent", "e2e").in("pwa").with("WAKEBACK=" + filepath.Join(root, programBin)).run(ctx)
+}
