@@ -27,11 +27,11 @@ export class Program {
       const late = setTimeout(() => no(new Error(`no address after ${START_MS} ms: ${this.said}`)), START_MS);
       const hear = (data) => {
         this.said += data;
-        const found = /http:\/\/(?:127\.0\.0\.1|localhost):(\d+)/.exec(this.said);
+        const found = /(http:\/\/[\w.]+:(\d+))/.exec(this.said);
         if (!found) return;
         clearTimeout(late);
-        this.port = Number(found[1]);
-        ok(`http://localhost:${this.port}/`);
+        this.port = Number(found[2]);
+        ok(`${found[1]}/`);
       };
       this.child.stdout.on("data", hear);
       this.child.stderr.on("data", hear);

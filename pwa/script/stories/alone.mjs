@@ -23,7 +23,6 @@ export const stories = {
     await a.page.waitForSelector(".return .range");
     await a.says("alone since");
     await a.says("only on this phone");
-    await a.says("guidance from this phone");
     await a.page.waitForFunction(() => /0\.18 nm|330 m/.test(document.querySelector(".range").innerText));
     await a.settled();
     await a.tap("I SEE THEM");
@@ -56,7 +55,6 @@ export const stories = {
     const greyMs = Date.now() - quiet;
     await fake.stop();
     await a.says("alone since");
-    await a.says("guidance from this phone");
     await a.goes(54.102, 7.9, { speed: 3, heading: 0 });
     await a.page.waitForFunction(() => document.querySelector(".range")?.innerText.includes("220"));
     await a.tap("ALONGSIDE");

@@ -41,6 +41,15 @@ const SCREENS = {
   return: { start: press },
   "return-near": { start: press, frame: { range_m: 34, wedge_deg: 180, relative_deg: 12, closing_kn: 2, eta_s: 33, do: { code: "look_all_round", range_m: 34 }, cautions: ["call_again", "engine_neutral"] } },
   "return-stale": { start: press, frame: { fix: { position: { lat: 54.1, lon: 7.9 }, at: "", age_s: 48, sog_kn: 5, cog_deg: 320, source: "vessel", error_m: 8, stale: true }, wedge_deg: 32, heading_deg: null, relative_deg: null, do: { code: "steer_to", bearing_deg: 283 }, cautions: ["call_first", "fix_old"] } },
+  "two-alone": { start: async (p, fake) => {
+    await press(p);
+    await p.mark(".touch .second");
+    await p.says("person 2");
+    await p.settled();
+    fake.answerWith = 503;
+    await p.tap("ALONGSIDE");
+    await p.says("only on this phone");
+  }, frame: { person: 2, do: { code: "recover" } } },
   when: { start: async (p) => { await press(p); await p.tap("Fell earlier"); } },
   call: { start: async (p) => { await press(p); await p.tap("Radio call"); } },
   more: { start: async (p) => { await press(p); await p.tap("More", ".touch"); } },
@@ -71,7 +80,7 @@ async function look(s, size, palette) {
       if (first) fake.send(frame(first.incident, { drill: !!first.drill, ...SCREENS[name].frame }));
     }, 200);
     try {
-      await SCREENS[name].start(p);
+      await SCREENS[name].start(p, fake);
       if (name !== "ready" && name !== "setup") await p.says(/near/.test(name) ? "34" : "220");
       await p.page.evaluate(() => new Promise((ok) => requestAnimationFrame(() => requestAnimationFrame(ok))));
       await p.page.screenshot({ path: join(shots, `${name}-${palette}-${size}.png`) });
@@ -118,8 +127,10 @@ function fits(p) {
       const ring = document.querySelector(".ring")?.getBoundingClientRect();
       if (ring && !sheet.matches(".full") && r.top < ring.bottom - 1 && r.left < ring.right - 1) out.push("the sheet covers the picture");
     }
-    const ring = document.querySelector(".rim")?.getBoundingClientRect();
-    if (ring && ring.width < Math.min(190, innerHeight / 2)) out.push(`the ring is only ${ring.width} px wide`);
+    // Everything at once (two persons, alone, entries waiting) leaves the least room for it.
+    const least = document.querySelector(".people") ? 140 : 190;
+    const rim = document.querySelector(".rim")?.getBoundingClientRect();
+    if (rim && rim.width < Math.min(least, innerHeight / 2)) out.push(`the ring is only ${rim.width} px wide`);
     const words = document.querySelector(".words");
     if (words && words.scrollHeight > words.clientHeight + 1) out.push("words are cut off");
     return out;

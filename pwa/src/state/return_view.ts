@@ -30,7 +30,6 @@ export interface Thing {
 
 export interface ReturnView {
   elapsed: string;
-  persons: string | null;
   /** The sentence: what to do now. */
   order: string;
   /** "40 degrees to port". */
@@ -55,12 +54,12 @@ export function returnView(input: ReturnInput): ReturnView {
   const direction = directionWords(frame);
   return {
     elapsed: f.elapsed((nowMs - fellMs) / 1000),
-    persons: personsWords(selection),
     order: orderWords(frame),
     direction,
     range: frame?.range_m != null ? f.range(frame.range_m) : null,
-    bearing: bearingWords(frame),
-    speed: speedWords(frame),
+    // Alongside or aboard, nobody steers by a bearing.
+    bearing: near(frame) ? null : bearingWords(frame),
+    speed: near(frame) ? null : speedWords(frame),
     look: lookThing(frame),
     happened: happenedThing(selection),
     fix: fixWords(frame, input.frameAgeS),
@@ -69,11 +68,6 @@ export function returnView(input: ReturnInput): ReturnView {
     ring: ringView(input, direction),
     stale,
   };
-}
-
-function personsWords({ state, person }: Selection): string | null {
-  if (!person || state.persons.length < 2) return null;
-  return t("return.persons", { n: person.no, all: state.persons.length });
 }
 
 function directionWords(frame: Frame | null): string | null {
@@ -108,6 +102,8 @@ function orderWords(frame: Frame | null): string {
   const key = `do.${code}`;
   return isKey(key) ? t(key) : t("do.other");
 }
+
+const near = (frame: Frame | null): boolean => frame?.do.code === "recover" || frame?.do.code === "all_aboard";
 
 function bearingWords(frame: Frame | null): string | null {
   if (frame?.bearing_deg == null) return null;
