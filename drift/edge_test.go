@@ -466,7 +466,8 @@ func TestColdWaterAgainstTable(t *testing.T) {
 		"<= 0 C (32 F)": {15, 45}, "0-4 C (32.5-40 F)": {30, 90}, "4-10 C (40-50 F)": {60, 180},
 		"10-16 C (50-60 F)": {60, 360}, "16-21 C (60-70 F)": {120, 2400},
 	}
-	temps := map[string]float64{"<= 0 C (32 F)": -1, "0-4 C (32.5-40 F)": 2, "4-10 C (40-50 F)": 7, "10-16 C (50-60 F)": 13, "16-21 C (60-70 F)": 18}
+	// The upper end of each row belongs to it, as "<= 0" says.
+	temps := map[string]float64{"<= 0 C (32 F)": 0, "0-4 C (32.5-40 F)": 4, "4-10 C (40-50 F)": 10, "10-16 C (50-60 F)": 16, "16-21 C (60-70 F)": 21}
 	met := 0
 	for _, row := range table(t, "survival.csv") {
 		want, ok := bands[row[1]]

@@ -117,6 +117,23 @@ func TestErrorGrowsWithAge(t *testing.T) {
 	}
 }
 
+// Between two of a table the error is between theirs; a drift watched for a
+// while ages from the end of the watch.
+func TestErrorBetweenAndAfter(t *testing.T) {
+	a, b := flow("10:00", 90, 1, Tables), flow("11:00", 90, 1, Tables)
+	a.SDMs, b.SDMs = nav.Some(0.1), nav.Some(0.3)
+	v, _ := mustCurrents(t, a, b).At(at("10:15")).Get()
+	near(t, "error between", v.SDMs, 0.15, 1e-12)
+	watched := Sample{From: at("09:00"), Over: 30 * time.Minute, Velocity: nav.Towards(90, 3), Source: Measured}
+	h := mustCurrents(t, watched)
+	for when, age := range map[string]time.Duration{"09:00": 0, "09:20": 0, "09:30": 0, "10:00": 30 * time.Minute, "08:50": -10 * time.Minute} {
+		v, _ := h.At(at(when)).Get()
+		if v.Age != age || v.SDMs != Current.SDAt(0.05, age) {
+			t.Errorf("at %s: age %v, error %v", when, v.Age, v.SDMs)
+		}
+	}
+}
+
 // A gust moves nothing.
 func TestGustsAreOnlyShown(t *testing.T) {
 	s := Sample{From: at("10:00"), Velocity: nav.BlowingFrom(240, 15), Source: Instrument}
