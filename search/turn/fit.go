@@ -56,34 +56,38 @@ func (f Fit) Quality() Quality {
 }
 
 // The parameters of a fit are the logarithms of radius, lag, speed lag and of
-// the ratio of the speed lost, and the pivot in radii.
+// the ratio of the speed lost, the pivot in radii, and the tightness of entry.
 const (
 	pRadius = iota
 	pLag
 	pSpeedLag
 	pLost
 	pPivot
+	pEntry
 	pShape // how many
 )
 
 func shapeOf(m Model) []float64 {
 	lost := math.Max(0.02, 1-m.SpeedRatio)
-	return []float64{math.Log(m.RadiusM), math.Log(m.LagS), math.Log(m.SpeedLagS), math.Log(lost / (1 - lost)), m.PivotM / m.RadiusM}
+	return []float64{math.Log(m.RadiusM), math.Log(m.LagS), math.Log(m.SpeedLagS), math.Log(lost / (1 - lost)), m.PivotM / m.RadiusM, m.TightEntry}
 }
 
 func (m Model) shaped(x []float64) Model {
 	m.RadiusM, m.LagS, m.SpeedLagS = math.Exp(x[pRadius]), math.Exp(x[pLag]), math.Exp(x[pSpeedLag])
 	m.SpeedRatio = 1 / (1 + math.Exp(x[pLost]))
 	m.PivotM = x[pPivot] * m.RadiusM
+	m.TightEntry = x[pEntry]
 	return m
 }
 
-// priors hold what a circle tells little of: each parameter lies within a
-// factor of three of its start, the pivot within a quarter of the radius. One
-// sigma; our choice.
+// priors hold what a circle tells little of: radius and speed lost lie within
+// a factor of three of their start; the lags, in radii run, within a factor of
+// 1.8, which holds the four vessels and the ship that the model is tested
+// with; the pivot within 0.15 of the radius, the tightness of the entry within
+// a half. One sigma; our choice.
 func priors(x, start []float64) []float64 {
 	var r []float64
-	for i, sigma := range []float64{1.1, 1.1, 1.1, 1.1, 0.25} {
+	for i, sigma := range []float64{1.1, 0.6, 0.6, 1.1, 0.15, 0.5} {
 		r = append(r, (x[i]-start[i])/sigma)
 	}
 	return r
@@ -115,7 +119,7 @@ func FitFigures(start Model, f Figures) (Fit, error) {
 		}
 		return r
 	}
-	s := leastSquares(fixedLength(misfit, x0), x0, []float64{1e-3, 1e-3, 1e-3, 1e-3, 1e-3})
+	s := leastSquares(fixedLength(misfit, x0), x0, []float64{1e-3, 1e-3, 1e-3, 1e-3, 1e-3, 1e-3})
 	m := start.shaped(s.x)
 	got, err := m.Figures()
 	if err != nil {

@@ -22,7 +22,7 @@ func leastSquares(f residuals, x, step []float64) solution {
 	damping := 1e-2
 	r := f(x)
 	sum := sumSquares(r)
-	const most = 60
+	const most = 30
 	for range most {
 		jac := jacobian(f, x, r, step)
 		a, g := normal(jac, r)
@@ -35,7 +35,7 @@ func leastSquares(f residuals, x, step []float64) solution {
 			}
 			nr := f(next)
 			if s := sumSquares(nr); s < sum {
-				better = sum-s > 1e-6*sum
+				better = sum-s > 1e-5*sum
 				x, r, sum = next, nr, s
 				damping = math.Max(damping/10, 1e-9)
 				break

@@ -19,6 +19,10 @@ type Model struct {
 	RudderDeg   float64 `json:"rudder_deg"`        // hard over
 	RudderRate  float64 `json:"rudder_rate_deg_s"` // degrees a second
 	OrderDelayS float64 `json:"order_delay_s"`     // from the word to the wheel
+	// TightEntry is e: a vessel that still has her way turns shorter than in the
+	// steady circle, by (speed over steady speed) to the power e. 0 for a vessel
+	// of which only the steady circle is known.
+	TightEntry float64 `json:"tight_entry,omitempty"`
 }
 
 // ErrModel is wrapped when a model cannot be.
@@ -32,10 +36,11 @@ func (m Model) Validate() error {
 		low, high float64
 	}{
 		{"speed", m.SpeedMs, 0.1, 60}, {"turning radius", m.RadiusM, 1, 5000},
-		{"lag", m.LagS, 0.05, 600}, {"speed ratio", m.SpeedRatio, 0.1, 1},
-		{"speed lag", m.SpeedLagS, 0.05, 3600}, {"pivot", m.PivotM, -500, 500},
+		{"lag", m.LagS, 0.05, 20000}, {"speed ratio", m.SpeedRatio, 0.1, 1},
+		{"speed lag", m.SpeedLagS, 0.05, 20000}, {"pivot", m.PivotM, -500, 500},
 		{"rudder angle", m.RudderDeg, 1, 90}, {"rudder rate", m.RudderRate, 0.1, 1000},
 		{"order delay", m.OrderDelayS, 0, 60},
+		{"tight entry", m.TightEntry, -1, 3},
 	}
 	for _, c := range check {
 		if !(c.v >= c.low && c.v <= c.high) {
@@ -89,7 +94,7 @@ func (m Model) start(heading nav.TrueDeg) State {
 // step moves the state on by dt with the rudder going to the helm ordered:
 //
 //	rudder' = towards the order at its rate
-//	r' = (U/U0 · r_h · rudder/hard over - r) / (T·U0/U),  r_h = U0·lambda/R at U = U0·lambda
+//	r' = (U/U0 · (U/(lambda·U0))^e · r_h · rudder/hard over - r) / (T·U0/U),  r_h = U0·lambda/R at U = U0·lambda
 //	U' = (U_eq - U)/T_U,  U_eq = U0·(1 - (1 - lambda)·min(1, |r|R/U))
 //	sway = -p·r
 //
@@ -101,6 +106,9 @@ func (m Model) step(s State, order Helm, dt float64) State {
 	rate := s.RateDegS * math.Pi / 180
 	hard := m.SpeedMs / m.RadiusM
 	target := u / m.SpeedMs * hard * s.RudderDeg / m.RudderDeg
+	if m.TightEntry != 0 {
+		target *= math.Pow(u/(m.SpeedRatio*m.SpeedMs), m.TightEntry)
+	}
 	rate += (target - rate) / (m.LagS * m.SpeedMs / u) * dt
 	turning := math.Min(1, math.Abs(rate)*m.RadiusM/u)
 	s.SpeedMs += (m.SpeedMs*(1-(1-m.SpeedRatio)*turning) - s.SpeedMs) / m.SpeedLagS * dt
