@@ -66,6 +66,7 @@ type exited int
 func run(args []string, stdout, stderr io.Writer) (code int) {
 	var c cli
 	k, err := kong.New(&c, kong.Name("wakeback"), kong.Description(about), kong.Writers(stdout, stderr),
+		kong.Vars{"listen": defaultListen}, kong.ExplicitGroups([]kong.Group{{Key: "tls", Title: "TLS:"}}),
 		kong.Exit(func(code int) { panic(exited(code)) }), kong.ConfigureHelp(kong.HelpOptions{Compact: true, WrapUpperBound: 88}))
 	if err != nil {
 		return fail(stderr, err)
