@@ -75,8 +75,8 @@ func between(ms []Model, u float64) Model {
 	m := low
 	m.SpeedMs = u
 	m.RadiusM = mix(low.RadiusM, high.RadiusM)
-	m.LagS = mix(low.LagS*low.SpeedMs, high.LagS*high.SpeedMs) / u
-	m.SpeedLagS = mix(low.SpeedLagS*low.SpeedMs, high.SpeedLagS*high.SpeedMs) / u
+	m.LagS = math.Max(0.05, mix(low.LagS*low.SpeedMs, high.LagS*high.SpeedMs)/u)
+	m.SpeedLagS = math.Max(0.05, mix(low.SpeedLagS*low.SpeedMs, high.SpeedLagS*high.SpeedMs)/u)
 	m.SpeedRatio = mix(low.SpeedRatio, high.SpeedRatio)
 	m.PivotM = mix(low.PivotM, high.PivotM)
 	return m
