@@ -47,3 +47,20 @@ func BenchmarkCloudMinute(b *testing.B) {
 		_ = cl.Advance(at)
 	}
 }
+
+// BenchmarkDatum is a datum two hours after the fall.
+func BenchmarkDatum(b *testing.B) {
+	c := benchCase(b)
+	for b.Loop() {
+		_, _ = drift.DatumAt(c, c.FellFrom.Add(2*time.Hour))
+	}
+}
+
+// BenchmarkSpread is a cloud of 10,000 in a few numbers.
+func BenchmarkSpread(b *testing.B) {
+	c := benchCase(b)
+	cl := cloudAt(b, c, drift.Options{Members: 10_000, Seed: 1}, c.FellFrom.Add(2*time.Hour))
+	for b.Loop() {
+		cl.Spread()
+	}
+}

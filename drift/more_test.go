@@ -82,12 +82,17 @@ func TestCorridorIsMadeOfDatums(t *testing.T) {
 func TestUpdateSeesEveryInput(t *testing.T) {
 	base := benchCase(t)
 	for name, change := range map[string]func(*drift.Case){
-		"class":      func(c *drift.Case) { c.Class.Slope *= 1.1 },
-		"jibes":      func(c *drift.Case) { c.Class.JibesPerHour = 0.06 },
-		"start":      func(c *drift.Case) { c.Start.Position = position(t, "50 00.1N 001W") },
-		"error":      func(c *drift.Case) { c.Start.Error95M = nav.Some(77.0) },
-		"time":       func(c *drift.Case) { c.FellTo = c.FellTo.Add(time.Minute) },
-		"wind":       func(c *drift.Case) { c.Winds = winds(t, windFrom(clock("10:00"), 241, 15)) },
+		"class": func(c *drift.Case) { c.Class.Slope *= 1.1 },
+		"jibes": func(c *drift.Case) { c.Class.JibesPerHour = 0.06 },
+		"start": func(c *drift.Case) { c.Start.Position = position(t, "50 00.1N 001W") },
+		"error": func(c *drift.Case) { c.Start.Error95M = nav.Some(77.0) },
+		"time":  func(c *drift.Case) { c.FellTo = c.FellTo.Add(time.Minute) },
+		"wind":  func(c *drift.Case) { c.Winds = winds(t, windFrom(clock("10:00"), 241, 15)) },
+		"current east": func(c *drift.Case) {
+			s := c.Currents.Samples()
+			s[0].Velocity.EastMs += 0.1
+			c.Currents = currents(t, s...)
+		},
 		"wind drift": func(c *drift.Case) { c.WindDriven = true; c.Currents = currents(t) },
 		"coast":      func(c *drift.Case) { c.Coast = wall{50_000} },
 		"path": func(c *drift.Case) {

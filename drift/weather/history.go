@@ -12,10 +12,11 @@ import (
 
 // History is what is known of the wind, or of the current. The zero History is
 // of neither and takes nothing: use [NewWinds] or [NewCurrents]. A copy is a
-// snapshot: it stays as it is while samples are added to the original.
+// snapshot: it stays as it is, and may be read, while samples are added to the
+// original. Add to one of the two only.
 type History struct {
 	medium Medium
-	all    []Sample // everything said, in order; never changed in place
+	all    []Sample // everything said, in order; like the others never changed in place, only appended to
 	obs    []Sample // the observations that count, one of a moment
 	guide  []Sample // forecasts and tables that count, one of a moment
 }
@@ -49,7 +50,12 @@ func (h *History) Add(s Sample) error {
 	if err := s.Validate(h.medium); err != nil {
 		return fmt.Errorf("%v: %w", h.medium, err)
 	}
-	h.set(append(slices.Clone(h.all), s))
+	if n := len(h.all); n > 0 && !s.From.After(h.all[n-1].From) {
+		h.set(append(slices.Clone(h.all), s))
+		return nil
+	}
+	h.all = append(h.all, s)
+	h.count(s)
 	return nil
 }
 
@@ -58,16 +64,21 @@ func (h *History) set(all []Sample) {
 	all = slices.CompactFunc(all, func(a, b Sample) bool { return compare(a, b) == 0 })
 	h.all, h.obs, h.guide = all, nil, nil
 	for _, s := range all {
-		if s.Source.Guide() {
-			h.guide = lastOfMoment(h.guide, s)
-		} else {
-			h.obs = lastOfMoment(h.obs, s)
-		}
+		h.count(s)
+	}
+}
+
+// count puts a sample, not earlier than all others, among those that count.
+func (h *History) count(s Sample) {
+	if s.Source.Guide() {
+		h.guide = lastOfMoment(h.guide, s)
+	} else {
+		h.obs = lastOfMoment(h.obs, s)
 	}
 }
 
 // lastOfMoment appends s, which comes after all of list, or replaces the one of
-// the same moment.
+// the same moment; that only happens while a list is made anew.
 func lastOfMoment(list []Sample, s Sample) []Sample {
 	if n := len(list); n > 0 && list[n-1].From.Equal(s.From) {
 		list[n-1] = s

@@ -265,3 +265,44 @@ func TestHourlyStreams(t *testing.T) {
 		t.Errorf("no ranges: %v", err)
 	}
 }
+
+func TestMeanOf(t *testing.T) {
+	wind := func(when string, from nav.TrueDeg, kn float64) Sample {
+		return Sample{From: at(when), Velocity: nav.BlowingFrom(from, kn), Source: Instrument, Name: "masthead", Said: at(when)}
+	}
+	bad := wind("10:02", 0, 10)
+	bad.Velocity.EastMs = math.NaN()
+	got, ok := MeanOf(Wind, []Sample{wind("10:05", 350, 10), bad, wind("10:00", 10, 10), wind("10:03", 0, 16)}).Get()
+	if !ok || !got.From.Equal(at("10:00")) || got.Over != 5*time.Minute || !got.Said.Equal(at("10:05")) {
+		t.Fatalf("%+v, %v", got, ok)
+	}
+	dir, _ := got.Velocity.Direction().Get()
+	near(t, "from", nav.NormSignedDeg(float64(dir.Reciprocal())), 0, 1e-9) // across north, not 120
+	near(t, "speed, kn", got.Velocity.SpeedKn(), (16+20*math.Cos(10*math.Pi/180))/3, 1e-9)
+	near(t, "gust, kn", got.GustMs.Or(0)/nav.MsPerKn, 16, 1e-9)
+	if MeanOf(Wind, []Sample{bad}).IsSet() {
+		t.Error("a mean of nothing")
+	}
+	if err := got.Validate(Wind); err != nil {
+		t.Error(err)
+	}
+}
+
+// A history of two days of a wind a minute is made and read in passing.
+func TestLongHistory(t *testing.T) {
+	h := must(NewWinds())
+	for m := range 48 * 60 {
+		s := Sample{From: at("00:00").Add(time.Duration(m) * time.Minute), Velocity: nav.BlowingFrom(nav.TrueDeg(m%360), 15), Source: Instrument}
+		if err := h.Add(s); err != nil {
+			t.Fatal(err)
+		}
+	}
+	pieces := h.Pieces(at("10:00"), at("20:00"))
+	if len(pieces) != 600 {
+		t.Errorf("%d pieces, want one a minute", len(pieces))
+	}
+	// Two minutes of two days look at a few samples only.
+	if n := testing.AllocsPerRun(10, func() { h.Mean(at("12:00"), at("12:02")) }); n > 20 {
+		t.Errorf("%v allocations for two minutes", n)
+	}
+}

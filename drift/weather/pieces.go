@@ -47,17 +47,19 @@ func (h History) cuts(from, to time.Time) []time.Time {
 			cuts = append(cuts, t)
 		}
 	}
-	for i, s := range h.obs {
-		if i == 0 {
-			add(s.From.Add(-h.medium.Reach()))
-		}
+	// Only the sample that holds at from and those after it have a say.
+	first := lastAt(h.obs, from)
+	if first < 0 && len(h.obs) > 0 {
+		add(h.obs[0].From.Add(-h.medium.Reach()))
+	}
+	for _, s := range h.obs[max(first, 0):max(lastAt(h.obs, to)+1, first, 0)] {
 		add(s.From)
 		if len(h.guide) > 0 {
 			// One nanosecond on: at its end the observation still holds.
 			add(s.End().Add(h.medium.Reach() + 1))
 		}
 	}
-	for _, s := range h.guide {
+	for _, s := range h.guide[lastAt(h.guide, from)+1 : lastAt(h.guide, to)+1] {
 		add(s.From)
 	}
 	slices.SortFunc(cuts, time.Time.Compare)

@@ -115,3 +115,44 @@ func rank(s Source) int {
 	}
 	return 0
 }
+
+// MeanOf makes one sample of those an instrument gave within some minutes: the
+// mean of the velocities over that time, with the strongest as the gust of a
+// wind. Winds are to be given to a history like this, not one by one. Samples
+// that are not valid are left out; it is absent when none is left.
+func MeanOf(m Medium, samples []Sample) nav.Opt[Sample] {
+	var mean Sample
+	var sum nav.Velocity
+	n, fastest := 0.0, 0.0
+	for _, s := range samples {
+		if s.Validate(m) != nil {
+			continue
+		}
+		if n == 0 {
+			mean.From, mean.Over = s.From, s.Over
+		}
+		end := mean.End()
+		if s.End().After(end) {
+			end = s.End()
+		}
+		if s.From.Before(mean.From) {
+			mean.From = s.From
+		}
+		mean.Over = end.Sub(mean.From)
+		mean.Source, mean.Name = s.Source, s.Name
+		if s.Said.After(mean.Said) {
+			mean.Said = s.Said
+		}
+		sum = sum.Add(s.Velocity)
+		fastest = max(fastest, s.Velocity.SpeedMs(), s.GustMs.Or(0))
+		n++
+	}
+	if n == 0 {
+		return nav.None[Sample]()
+	}
+	mean.Velocity = sum.Scale(1 / n)
+	if m == Wind {
+		mean.GustMs = nav.Some(fastest)
+	}
+	return nav.Some(mean)
+}
