@@ -71,9 +71,10 @@ func (w *watchman) run(ctx context.Context) {
 }
 
 // isPersonal: man-overboard devices have identities 972xxyyyy (ITU-R M.585-9,
-// annex 2). Search and rescue transmitters and distress beacons of others are
-// on the status page, but raise no mark here.
-func isPersonal(mmsi uint32) bool { return mmsi/1_000_000 == 972 }
+// annex 2). Search and rescue transmitters and distress beacons raise no mark
+// here: their carriers are most likely other vessels. The vessel's own
+// person-overboard system may know no identity; then it is 0.
+func isPersonal(mmsi uint32) bool { return mmsi/1_000_000 == 972 || mmsi == 0 }
 
 // maxHeardBeacons bounds the memory of what was heard; our choice.
 const maxHeardBeacons = 1000
@@ -114,7 +115,7 @@ func (w *watchman) mark(mmsi uint32, live bool) (incident.Mark, incident.State, 
 			continue
 		}
 		for _, m := range st.Marks {
-			if m.Mmsi == mmsi {
+			if m.By == beaconName(mmsi) {
 				return m, st, true
 			}
 		}
@@ -133,7 +134,7 @@ func (w *watchman) stillTransmitting(mmsi uint32, before, now time.Time) bool {
 func (w *watchman) report(b feed.Beacon, h *heard, m incident.Mark, st incident.State, now time.Time) error {
 	pos, ok := b.Position.Get()
 	p, _ := st.Person(m.Person)
-	if !ok || m.Dismissed.IsSet() || p.Status == incident.IsAboard || now.Sub(h.written) < beaconEvery {
+	if !ok || b.MMSI == 0 || m.Dismissed.IsSet() || p.Status == incident.IsAboard || now.Sub(h.written) < beaconEvery {
 		return nil
 	}
 	_, err := w.s.ledger.write(func(wr *writing) error {
@@ -211,7 +212,7 @@ func otherPerson(st incident.State, mmsi uint32) nav.Opt[incident.PersonNo] {
 	most, another := incident.PersonNo(0), false
 	for _, m := range st.Marks {
 		most = max(most, m.Person)
-		another = another || m.Mmsi != 0 && m.Mmsi != mmsi
+		another = another || byBeacon(m) && m.Mmsi != mmsi
 	}
 	if !another {
 		return nav.None[incident.PersonNo]()
@@ -223,7 +224,7 @@ func (w *watchman) beaconsOpen() int {
 	n := 0
 	for _, st := range w.s.book.live() {
 		for _, m := range st.Marks {
-			if m.Mmsi != 0 {
+			if byBeacon(m) {
 				n++
 			}
 		}
@@ -231,4 +232,14 @@ func (w *watchman) beaconsOpen() int {
 	return n
 }
 
-func beaconName(mmsi uint32) string { return fmt.Sprintf("beacon %09d", mmsi) }
+// ownSystem is who a mark of the vessel's own person-overboard system is by.
+const ownSystem = "overboard system"
+
+func beaconName(mmsi uint32) string {
+	if mmsi == 0 {
+		return ownSystem
+	}
+	return fmt.Sprintf("beacon %09d", mmsi)
+}
+
+func byBeacon(m incident.Mark) bool { return m.Mmsi != 0 || m.By == ownSystem }

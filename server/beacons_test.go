@@ -138,7 +138,7 @@ func TestFloodOfBeaconsIsHeldBack(t *testing.T) {
 
 func TestOtherBeaconsRaiseNothing(t *testing.T) {
 	r := rigOn(t, realStore(t), nil)
-	for _, mmsi := range []uint32{970123456, 974123456, 211234560, 0} {
+	for _, mmsi := range []uint32{970123456, 974123456, 211234560} {
 		r.hear(feed.Beacon{MMSI: mmsi, Position: nav.Some(somewhere)})
 	}
 	if n := len(r.book.states()); n != 0 {
@@ -168,5 +168,18 @@ func TestMarkInThePastLiesOnTheTrack(t *testing.T) {
 	r.do("GET", api+"/track?from=2026-06-01T02:14:00Z&to=2026-06-01T02:16:00Z", nil, &track)
 	if len(track.Points) < 59 {
 		t.Errorf("track has %d points, want one a second", len(track.Points))
+	}
+}
+
+func TestOwnSystemWithoutIdentity(t *testing.T) {
+	r := rigOn(t, realStore(t), nil)
+	r.bridge.set(sailing(somewhere, start, 0, 6))
+	for range 10 { // the sentence is repeated
+		r.hear(feed.Beacon{Position: nav.Some(somewhere)})
+		r.clock.add(20 * time.Second)
+	}
+	st := r.only()
+	if len(st.Marks) != 1 || st.Events != 1 || st.Marks[0].By != ownSystem {
+		t.Errorf("%d marks in %d events by %q, want one by the overboard system", len(st.Marks), st.Events, st.Marks[0].By)
 	}
 }

@@ -51,7 +51,7 @@ func (s *Server) identify(c echo.Context) (identity, error) {
 		}
 	}
 	if s.gate.Open() {
-		return identity{Device: incident.DeviceID("open:" + c.RealIP()), Name: "someone", Role: gate.Skipper}, nil
+		return identity{Device: "open", Name: "someone", Role: gate.Skipper}, nil
 	}
 	return identity{}, gate.ErrUnpaired
 }

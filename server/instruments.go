@@ -9,13 +9,6 @@ import (
 	"wakeback/server/feed"
 )
 
-// feeds are the instruments of a configuration, with their status in the form
-// of the status page.
-type feeds struct{ *feed.Feeds }
-
-// Status is how each feed is.
-func (f feeds) Status(time.Time) any { return f.Feeds.Status() }
-
 // newInstruments makes the feeds of a configuration; nil when it has none.
 func newInstruments(cfg Config) (Instruments, error) {
 	if len(cfg.Feeds) == 0 {
@@ -25,14 +18,14 @@ func newInstruments(cfg Config) (Instruments, error) {
 	if err != nil {
 		return nil, fmt.Errorf("%w: %w", ErrConfig, err)
 	}
-	return feeds{f}, nil
+	return f, nil
 }
 
-// variation is the magnetic variation by the world model, where it holds.
+// variation is that of the magnetic model, where it may be used.
 func variation(p nav.Position, at time.Time) nav.Opt[nav.VariationDeg] {
-	v, err := sky.Variation(p, 0, at)
+	r, err := sky.Variation(p, 0, at)
 	if err != nil {
 		return nav.None[nav.VariationDeg]()
 	}
-	return v.Usable()
+	return r.Usable()
 }

@@ -22,7 +22,7 @@ type statusAnswer struct {
 	OpenPairing bool                  `json:"open_pairing"`
 	Store       Health                `json:"store"`
 	Vessel      feed.Vessel           `json:"vessel"`
-	Feeds       any                   `json:"feeds"`
+	Feeds       []feed.SourceStatus   `json:"feeds"`
 	Streams     hub.Stats             `json:"streams"`
 	Connected   []hub.Info            `json:"connected"`
 	Phones      []phoneFix            `json:"phones"`
@@ -32,7 +32,7 @@ type statusAnswer struct {
 // feedStatus is what instruments may tell about their sources beside what the
 // vessel does.
 type feedStatus interface {
-	Status(now time.Time) any
+	Status() []feed.SourceStatus
 }
 
 // getStatus is GET /status.
@@ -41,11 +41,11 @@ func (s *Server) getStatus(c echo.Context) error {
 	a := statusAnswer{
 		Now: now.UTC(), Version: s.cfg.Version, Epoch: s.store.Epoch(), LastSeq: s.store.LastSeq(),
 		Demo: s.cfg.Demo, OpenPairing: s.cfg.OpenPairing, Store: s.store.Health(),
-		Vessel: s.vessel.now(now), Feeds: []any{}, Streams: s.hub.Stats(), Connected: s.hub.Connected(),
+		Vessel: s.vessel.now(now), Feeds: []feed.SourceStatus{}, Streams: s.hub.Stats(), Connected: s.hub.Connected(),
 		Phones: s.phones.list(), Open: []incident.IncidentID{},
 	}
 	if f, ok := s.vessel.instruments.(feedStatus); ok {
-		a.Feeds = f.Status(now)
+		a.Feeds = f.Status()
 	}
 	for _, st := range s.book.live() {
 		a.Open = append(a.Open, st.ID)

@@ -7,6 +7,7 @@ import (
 	"net/http"
 	"time"
 
+	"github.com/google/uuid"
 	"github.com/gorilla/websocket"
 	"github.com/labstack/echo/v4"
 
@@ -50,6 +51,9 @@ func (s *Server) getStream(c echo.Context) error {
 		return nil // the upgrader has answered
 	}
 	id := who(c)
+	if !id.Paired { // all come from this machine: each stream counts as a device
+		id.Device = incident.DeviceID("open-" + uuid.NewString())
+	}
 	info := hub.Info{Device: id.Device, Name: id.Name, Role: id.Role.String(), Remote: c.RealIP()}
 	req := hub.Request{After: incident.Seq(after), Epoch: epoch}
 	if err := s.hub.Serve(s.streams, conn, info, req); err != nil {
