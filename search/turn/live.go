@@ -14,6 +14,9 @@ type Begun struct {
 	// Back means that the person is somewhere along the old track and not at a
 	// datum: after the turn the old track is followed back.
 	Back bool
+	// LengthM and StoppingM, from her search speed, time the last cues.
+	LengthM   nav.Opt[float64]
+	StoppingM nav.Opt[float64]
 }
 
 // Sensed is what the instruments say at one moment. Whatever is absent is
@@ -51,6 +54,10 @@ type Advice struct {
 	ChangeDeg float64 `json:"change_deg"`
 	Stage     int     `json:"stage"`  // of the manoeuvre's orders, from 0; their number when all are done
 	Passes    int     `json:"passes"` // missed so far
+
+	// Cue is what the engine is to do beside the steering: way_off or
+	// engine_neutral; empty further off.
+	Cue Code `json:"cue,omitempty"`
 
 	Doubts []Doubt `json:"doubts,omitempty"`
 }
@@ -99,7 +106,7 @@ type Live struct {
 	c      Case
 	name   Name
 	side   Side
-	back   bool
+	begun  Begun
 	phases []phase
 	stage  int
 
@@ -138,7 +145,7 @@ func NewLive(n Name, c Case, b Begun) (*Live, error) {
 	p := r.person()
 	r.s.EastM -= p.EastM
 	r.s.NorthM -= p.NorthM
-	l := &Live{c: c, name: n, side: side, back: b.Back, phases: seq, at: b.At, est: r.s, trialM: c.Model.RadiusM}
+	l := &Live{c: c, name: n, side: side, begun: b, phases: seq, at: b.At, est: r.s, trialM: c.Model.RadiusM}
 	l.steer.model = c.Model
 	l.last = l.advise()
 	return l, nil
@@ -256,7 +263,7 @@ func (l *Live) done(ph phase) bool {
 // who is at a datum.
 func (l *Live) comingAtThem() bool {
 	last := l.stage == len(l.phases)-1 || l.stage == len(l.phases)-2 && l.phases[l.stage].code != HelmOver
-	return !l.back && last && math.Abs(change(l.est, l.c.Heading, l.side)) > 90 || l.name == RaceTrack && l.stage == 2
+	return !l.begun.Back && last && math.Abs(change(l.est, l.c.Heading, l.side)) > 90 || l.name == RaceTrack && l.stage == 2
 }
 
 // swing is how far she goes on turning before an order given now is felt: the
@@ -281,7 +288,7 @@ func (l *Live) advise() Advice {
 		RangeM: nav.Some(rangeM), Bearing: nav.Some(nav.True(l.est.HeadingDeg + relative)),
 	}
 	switch {
-	case l.still && (l.stage < len(l.phases) || rangeM > alongsideM):
+	case l.still && (l.stage < len(l.phases) || l.begun.Back || rangeM > passNearM):
 		a.Code = NoWay
 	case l.stage < len(l.phases):
 		l.ordered(&a)

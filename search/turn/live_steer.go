@@ -40,7 +40,7 @@ const (
 // steered is the advice once the orders are done: steer at the person, or back
 // along the old track.
 func (l *Live) steered(a *Advice, rangeM, relative float64) {
-	if !l.back {
+	if !l.begun.Back {
 		l.watch.Add(rangeM, l.c.Model.RadiusM)
 		if rangeM < alongsideM {
 			a.Code = Alongside
@@ -48,13 +48,13 @@ func (l *Live) steered(a *Advice, rangeM, relative float64) {
 		}
 	}
 	want := l.wanted(rangeM, relative)
-	l.steer.advise(a, want, l.est, rangeM, relative, !l.back)
+	l.steer.advise(a, want, l.est, rangeM, relative, !l.begun.Back)
 }
 
 // wanted is the heading that leads to the person, allowing for their leeway,
 // or back along the old track and onto it.
 func (l *Live) wanted(rangeM, relative float64) nav.TrueDeg {
-	if l.back {
+	if l.begun.Back {
 		recip := l.c.Heading.Reciprocal()
 		sin, cos := math.Sincos(float64(recip) * math.Pi / 180)
 		cross := l.est.EastM*cos - l.est.NorthM*sin // positive to the right of the way back

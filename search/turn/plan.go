@@ -109,6 +109,20 @@ func (res *Result) angles(m Model, n Name, textbook float64) error {
 	return nil
 }
 
+// WithOwnShift is the case with the shift angle of this vessel in place of the
+// textbook's, for a manoeuvre that has one.
+func (c Case) WithOwnShift(n Name) (Case, error) {
+	if ShiftDeg(n) == 0 {
+		return c, nil
+	}
+	own, _, err := c.Model.OwnShiftDeg(n)
+	if err != nil {
+		return c, fmt.Errorf("own shift angle: %w", err)
+	}
+	c.ShiftDeg = nav.Some(own)
+	return c, nil
+}
+
 // Both runs a manoeuvre to both sides.
 func Both(n Name, c Case) (port, starboard Result, err error) {
 	c.TurnTo = Port
