@@ -12,6 +12,7 @@ import (
 
 func TestMain(m *testing.M) {
 	store.CheckMain()
+	childMain()
 	code := m.Run()
 	if code == 0 {
 		if err := goleak.Find(); err != nil {
