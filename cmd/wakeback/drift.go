@@ -1,8 +1,10 @@
 package main
 
 import (
+	"errors"
 	"fmt"
 	"io"
+	"os"
 	"time"
 
 	"wakeback/drift"
@@ -22,6 +24,7 @@ type driftCmd struct {
 	Particles int     `help:"Members of the cloud." default:"5000"`
 	Worksheet bool    `help:"Print the worksheet, step by step."`
 	Classes   bool    `help:"List the classes of leeway with their sources."`
+	SVG       string  `name:"svg" help:"Write a picture of the cloud to a file." placeholder:"FILE" type:"path"`
 	JSON      bool    `help:"Print one JSON document."`
 }
 
@@ -78,6 +81,11 @@ func (c *driftCmd) Run(e *env) error {
 	if err := cloud.Advance(at); err != nil {
 		return err
 	}
+	if c.SVG != "" {
+		if err := writePicture(c.SVG, cloud, d); err != nil {
+			return err
+		}
+	}
 	out := describe(d, cloud.Spread(), at)
 	if c.Worksheet {
 		out.Worksheet = nav.Some(d.Worksheet(kase))
@@ -86,6 +94,18 @@ func (c *driftCmd) Run(e *env) error {
 		return e.printJSON(out)
 	}
 	return out.table(e.out)
+}
+
+// writePicture draws the cloud and the datum to a file.
+func writePicture(path string, cloud *drift.Cloud, d drift.Datum) error {
+	f, err := os.Create(path)
+	if err != nil {
+		return fmt.Errorf("write the picture: %w", err)
+	}
+	if err := errors.Join(cloud.SVG(f, d), f.Close()); err != nil {
+		return fmt.Errorf("write the picture %s: %w", path, err)
+	}
+	return nil
 }
 
 // kase reads the case from the flags.
