@@ -61,10 +61,19 @@ export const stories = {
     const a = await s.phone({ open: false });
     await a.page.route(/\/assets\/start/, () => {}); // never answered
     await a.page.route("**/api/**", (r) => r.abort());
-    await a.page.goto(s.url, { waitUntil: "commit" });
-    await a.ready();
-    const usableMs = await a.page.evaluate(() => Math.round(performance.now()));
+    const open = async () => {
+      await a.page.goto(s.url, { waitUntil: "commit" });
+      await a.ready();
+      return a.page.evaluate(() => Math.round(performance.now()));
+    };
+    const usableMs = await open();
     assert(usableMs < 1000, `usable after ${usableMs} ms`);
+    // As on a phone several years old.
+    const cdp = await a.cdp();
+    await cdp.send("Emulation.setCPUThrottlingRate", { rate: 4 });
+    const slowMs = await open();
+    assert(slowMs < 1500, `usable after ${slowMs} ms on a slow phone`);
+    await cdp.send("Emulation.setCPUThrottlingRate", { rate: 1 });
     await a.mark();
     await a.says("Kept on this phone");
     const [event] = await a.holds("outbox", 1);
@@ -77,7 +86,7 @@ export const stories = {
     await a.returning();
     await until("it reached the server once", () => fake.events.length === 1);
     await a.holds("outbox", 0);
-    s.measured = ` usable after ${usableMs} ms`;
+    s.measured = ` usable after ${usableMs} ms, ${slowMs} ms with the processor slowed four times`;
   },
 
   "drops and fingers elsewhere mark nothing": async (s) => {

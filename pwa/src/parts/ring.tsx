@@ -39,8 +39,9 @@ export function Ring({ view, words }: Props) {
       {view.driftDeg !== null && <RimMark deg={view.driftDeg} kind="drift" word={words.drift} />}
       {view.windDeg !== null && <RimMark deg={view.windDeg} kind="wind" word={words.wind} />}
       <path class="own" d="M0 -13 C5 -6 6 0 5 10 L-5 10 C-6 0 -5 -6 0 -13 Z" transform={`rotate(${view.northDeg + view.headingDeg})`} />
+      {view.disc && <circle class="disc" {...at(view.disc.angleDeg, view.disc.rangeM * scale)} r="10" />}
+      {/* The cross is hollow, so that the disc is seen through it where both are in one place. */}
       {view.cross && <Cross {...xy(view.cross.angleDeg, view.cross.rangeM * scale)} />}
-      {view.disc && <circle class="disc" {...at(view.disc.angleDeg, view.disc.rangeM * scale)} r="8" />}
     </svg>
   );
 }
@@ -75,19 +76,19 @@ function RimMark({ deg, kind, word }: { deg: number; kind: "wind" | "drift"; wor
 
 /** The hollow cross of where it happened. */
 export function Cross({ x, y }: { x: number; y: number }) {
+  const d = "M-3.5 -11 H3.5 V-3.5 H11 V3.5 H3.5 V11 H-3.5 V3.5 H-11 V-3.5 H-3.5 Z";
   return (
-    <path
-      class="cross"
-      d="M-3 -9 H3 V-3 H9 V3 H3 V9 H-3 V3 H-9 V-3 H-3 Z"
-      transform={`translate(${x.toFixed(1)} ${y.toFixed(1)})`}
-    />
+    <g transform={`translate(${x.toFixed(1)} ${y.toFixed(1)})`}>
+      <path class="cross-case" d={d} />
+      <path class="cross" d={d} />
+    </g>
   );
 }
 
 /** The two shapes beside their words. */
 export function Shape({ kind }: { kind: "disc" | "cross" }) {
   return (
-    <svg class="shape" viewBox="-12 -12 24 24" aria-hidden="true">
+    <svg class="shape" viewBox="-13 -13 26 26" aria-hidden="true">
       {kind === "disc" ? (
         <>
           <circle class="halo" r="11" />
