@@ -92,7 +92,6 @@ const (
 	noWayKn      = 0.5 // below it she does not answer the helm
 	wayAgainKn   = 1.0
 	liveHorizonS = 900 // how far ahead the next order is looked for
-	liveParts    = 40  // steps of looking ahead to a radius run
 	slackSwing   = 0.1 // of the rate hard over: not turning
 	hesitateS    = 3   // allowed to a helmsman beyond the order's delay
 	learnPart    = 0.2 // weight of each second's radius
@@ -341,9 +340,7 @@ func sideOf(v float64) Side {
 func (l *Live) lookAhead(ph phase) nav.Opt[float64] {
 	ahead := *l
 	order := ph.to(l.side)
-	// The model's own step but for long turns: a fortieth of the time to run one radius turns her by less than two
-	// degrees a step.
-	dt := math.Max(stepS, math.Min(1, l.c.Model.RadiusM/l.c.Model.SpeedMs/liveParts))
+	dt := l.c.Model.coarseStep()
 	for t := 0.0; t < liveHorizonS; t += dt {
 		if ahead.done(ph) {
 			return nav.Some(t)

@@ -14,12 +14,20 @@ func (l *Live) move(h Helm, dt float64) {
 	l.est.NorthM -= l.c.PersonDrift.NorthMs * dt
 }
 
+// coarseStep is a step for advice that is made anew every second: two degrees
+// of turn, and a fifth of the shorter lag.
+func (m Model) coarseStep() float64 {
+	dt := math.Min(m.RadiusM/m.SpeedMs/30, math.Min(m.LagS, m.SpeedLagS)/5)
+	return math.Max(stepS, math.Min(1, dt))
+}
+
 // predict reckons the state dt seconds on, with the last order obeyed and not
 // overshot.
 func (l *Live) predict(dt float64) State {
 	ahead := *l
-	for t := math.Min(dt, longestGapS); t > 1e-9; t -= stepS {
-		ahead.move(ahead.presumedHelm(), math.Min(t, stepS))
+	step := l.c.Model.coarseStep()
+	for t := math.Min(dt, longestGapS); t > 1e-9; t -= step {
+		ahead.move(ahead.presumedHelm(), math.Min(t, step))
 	}
 	return ahead.est
 }

@@ -42,13 +42,38 @@ const (
 func (l *Live) steered(a *Advice, rangeM, relative float64) {
 	if !l.begun.Back {
 		l.watch.Add(rangeM, l.c.Model.RadiusM)
-		if rangeM < alongsideM {
+		l.cue(a, rangeM, relative)
+		switch {
+		case rangeM < math.Max(alongsideM, l.begun.LengthM.Or(0)/2):
 			a.Code = Alongside
+			return
+		case l.still:
+			a.Code = StoppedNear
 			return
 		}
 	}
 	want := l.wanted(rangeM, relative)
 	l.steer.advise(a, want, l.est, rangeM, relative, !l.begun.Back)
+	if !a.Next.IsSet() && !l.begun.Back && a.Cue == "" {
+		in := (rangeM - l.wayOffM()) / math.Max(l.est.SpeedMs, 0.5)
+		a.Next = nav.Some(Next{Code: WayOff, InS: nav.Some(in)})
+	}
+}
+
+// lengthM is her length, or what her turning circle says of it: the default of
+// a profile, two lengths to a radius.
+func (l *Live) lengthM() float64 { return l.begun.LengthM.Or(l.trialM / 2) }
+
+// wayOffM is the range at which way is to be taken off.
+func (l *Live) wayOffM() float64 { return l.begun.StoppingM.Or(stopLengths * l.lengthM()) }
+
+// cue is what the engine is to do: way off with the person ahead, out of gear
+// near them on whatever side.
+func (l *Live) cue(a *Advice, rangeM, relative float64) {
+	due := Approach{WayOffM: l.wayOffM(), NeutralM: neutralLengths * l.lengthM()}.cue(rangeM)
+	if due == Neutral || due == WayOff && math.Abs(relative) < 90 {
+		a.Cue = due
+	}
 }
 
 // wanted is the heading that leads to the person, allowing for their leeway,

@@ -29,11 +29,11 @@ func (res Result) SVG(c Case, current nav.Opt[nav.Velocity]) string {
 	fmt.Fprintf(&b, "\n<title>%s, first turn to %s, back after %s</title>\n", escape(string(res.Name)), res.Side, minutes(res.TotalS))
 	f.line(&b, "path", "#1f4e79", offsets(path))
 	f.line(&b, "person", "#c00000", person)
-	f.dot(&b, "fall", "#c00000", person[0], "fell here")
-	f.dot(&b, "now", "#c00000", person[1], "person, "+minutes(res.TotalS))
+	f.dot(&b, "fall", "#c00000", person[0], 16, "fell here")
+	f.dot(&b, "now", "#c00000", person[1], 16, "person, "+minutes(res.TotalS))
 	for i, o := range res.Orders {
 		at := pathAt(path, o.AtS)
-		f.dot(&b, "order", "#1f4e79", at, fmt.Sprintf("%d. %s", i+1, orderWords(o)))
+		f.dot(&b, "order", "#1f4e79", at, 4, fmt.Sprintf("%d. %s", i+1, orderWords(o)))
 	}
 	f.scale(&b, current.IsSet())
 	b.WriteString("</svg>\n")
@@ -118,10 +118,10 @@ func (f frame) line(b *strings.Builder, class, colour string, points []nav.Offse
 	b.WriteString("\"/>\n")
 }
 
-func (f frame) dot(b *strings.Builder, class, colour string, at nav.Offset, words string) {
+func (f frame) dot(b *strings.Builder, class, colour string, at nav.Offset, down float64, words string) {
 	x, y := f.xy(at)
 	fmt.Fprintf(b, `<circle class="%s" cx="%.1f" cy="%.1f" r="4" fill="%s"/><text x="%.1f" y="%.1f">%s</text>`+"\n",
-		class, x, y, colour, x+8, y+4, escape(words))
+		class, x, y, colour, x+8, y+down, escape(words))
 }
 
 // scale draws a length of 1, 2 or 5 times a power of ten, and says what the
