@@ -8,6 +8,7 @@ import (
 
 	"wakeback/drift/nav"
 	"wakeback/search/incident"
+	"wakeback/server/gate"
 )
 
 func marked() incident.Marked {
@@ -179,5 +180,31 @@ func TestStoreThatCannotWrite(t *testing.T) {
 	}
 	if resp := r.do("GET", "/readyz", nil, nil); resp.StatusCode != 200 {
 		t.Errorf("readyz = %d, want 200", resp.StatusCode)
+	}
+}
+
+func TestPhonesSayWhereTheyAre(t *testing.T) {
+	r := rigOn(t, realStore(t), func(c *Config) { c.OpenPairing = false })
+	a := r.pair(gate.Watch, "Anna")
+	ear := r.listen("", bearer(a.Token))
+	for i := range 3 {
+		ear.say(map[string]any{"t": "fix", "at": start.Add(time.Duration(i) * time.Second), "position": somewhere, "error_m": 4, "sog_kn": 6, "cog_deg": 360})
+	}
+	ear.say(map[string]any{"t": "fix", "at": start, "position": map[string]any{"lat": 99, "lon": 0}})
+	if m := ear.wait("problem", nil); m["field"] != "position" {
+		t.Errorf("problem = %v, want one about position", m)
+	}
+	ear.say(map[string]any{"t": "fix", "at": start, "position": somewhere, "sog_kn": 999})
+	if m := ear.wait("problem", nil); m["field"] != "sog_kn" {
+		t.Errorf("problem = %v, want one about sog_kn", m)
+	}
+	list := r.phones.list()
+	if len(list) != 1 || list[0].Name != "Anna" || list[0].CogDeg.Or(1) != 0 {
+		t.Errorf("phones = %+v, want Anna's last word", list)
+	}
+	r.keeper.flush()
+	fixes, err := r.store.Track(a.Device.ID, start, start.Add(time.Minute))
+	if err != nil || len(fixes) != 3 {
+		t.Errorf("her track has %d fixes (%v), want 3", len(fixes), err)
 	}
 }

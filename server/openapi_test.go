@@ -177,7 +177,7 @@ func TestAnswersFollowTheDocument(t *testing.T) {
 		c.send("GET", api+path, nil, as)
 		c.send("GET", api+path, nil, nil)
 	}
-	r.phones.put(phoneFix{Device: "d", Name: "n", At: start, Position: somewhere})
+	r.phones.put(phoneFix{Device: "d", Name: "n", At: start, Position: somewhere}, true)
 	r.bridge.set(func(now time.Time) feed.Vessel { return feed.Vessel{At: now} })
 	c.send("GET", api+"/status", nil, as)
 	c.send("POST", api+"/codes", map[string]any{"role": "watch"}, as)

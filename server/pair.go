@@ -63,8 +63,7 @@ type meAnswer struct {
 }
 
 func (s *Server) getMe(c echo.Context) error {
-	id := who(c)
-	return c.JSON(http.StatusOK, meAnswer{id.Device, id.Name, id.Role, id.Paired})
+	return c.JSON(http.StatusOK, meAnswer(who(c)))
 }
 
 // postCode is POST /codes: a one-time code for another device.

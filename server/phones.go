@@ -36,7 +36,9 @@ type phones struct {
 // maxPhones bounds the phones held in memory; our choice, several crews.
 const maxPhones = 100
 
-func (p *phones) put(f phoneFix) {
+// put takes a phone's word. Only that of a paired phone goes into a track: one
+// that is not has no name that stays.
+func (p *phones) put(f phoneFix, paired bool) {
 	p.mu.Lock()
 	defer p.mu.Unlock()
 	if p.last == nil {
@@ -48,7 +50,7 @@ func (p *phones) put(f phoneFix) {
 	}
 	p.last[f.Device] = f
 	// One position a second is what a track holds.
-	if !known || f.At.Sub(old.At).Abs() >= time.Second {
+	if paired && (!known || f.At.Sub(old.At).Abs() >= time.Second) {
 		p.fresh = append(p.fresh, f)
 	}
 }

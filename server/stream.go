@@ -168,7 +168,11 @@ func (s *Server) streamFix(c *hub.Client, raw []byte) error {
 	if r.err != nil {
 		return r.err
 	}
-	s.phones.put(f)
+	from, err := s.speaker(c.Info())
+	if err != nil {
+		return err
+	}
+	s.phones.put(f, from.Paired)
 	return nil
 }
 
