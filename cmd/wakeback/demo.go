@@ -14,7 +14,7 @@ import (
 // stored goes into a folder of its own, gone at the end, unless one was named:
 // a demonstration must not stand among real incidents.
 func (c *serveCmd) demo(e *env, cfg *server.Config, log *slog.Logger) (stop func(), err error) {
-	v, err := demo.New(log, e.now, 1)
+	v, err := demo.New(demo.Config{Seed: 1, Now: e.now, Log: log})
 	if err != nil {
 		return nil, err
 	}
@@ -29,7 +29,7 @@ func (c *serveCmd) demo(e *env, cfg *server.Config, log *slog.Logger) (stop func
 	shown := cfg.Ready
 	cfg.Ready = func(r server.Ready) {
 		shown(r)
-		sailing.Go(func() { v.Run(ctx, demo.Ask(strings.TrimSuffix(r.URL, "/"))) })
+		sailing.Go(func() { v.Run(ctx, demo.AskServer(strings.TrimSuffix(r.URL, "/"))) })
 	}
 	return func() { cancel(); sailing.Wait(); cleanup() }, nil
 }
