@@ -3,6 +3,7 @@
 
 import type { LogEvent, Position, PositionSource } from "../wire/event";
 import type { Frame, State } from "../wire/frame";
+import type { SearchMethods } from "./search_calls";
 
 /** An error that the engine answered, naming the field at fault. */
 export class EngineError extends Error {
@@ -34,7 +35,7 @@ export interface Back {
   error_m?: number | null;
 }
 
-interface Methods {
+interface Methods extends SearchMethods {
   add_events: { args: { events: LogEvent[] }; answer: unknown };
   states: { args: Record<string, never>; answer: { incidents: State[] } };
   clear: { args: Record<string, never>; answer: unknown };

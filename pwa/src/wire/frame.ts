@@ -2,6 +2,7 @@
 // steer frame, one form from both.
 
 import type { Kind, LogEvent, Position, PositionSource } from "./event";
+import type { LegSeen, SearchState } from "./search";
 
 /** Where the own vessel is, with its age and source. */
 export interface Fix {
@@ -89,6 +90,8 @@ export interface Frame {
   wedge_deg: number | null;
   closing_kn: number | null;
   eta_s: number | null;
+  /** The search leg being steered, if there is one. */
+  leg?: LegSeen | null;
   do: Instruction;
   cautions: string[];
 }
@@ -135,6 +138,8 @@ export interface PersonState {
   condition?: string;
   name?: string;
   life_jacket: string;
+  clothing?: string;
+  moving?: string;
   working_mark?: string | null;
   in_sight: boolean;
   sight_at?: string;
@@ -162,7 +167,7 @@ export interface Charge extends Said {
 }
 
 /** What the events of one incident add up to; folded by the engine. */
-export interface State {
+export interface State extends SearchState {
   id: string;
   joined?: string[];
   drill?: boolean;
