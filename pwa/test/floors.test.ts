@@ -15,10 +15,11 @@ const MAY: Record<string, string[]> = {
   parts: ["parts", "units", "wire"],
   sync: ["sync", "wire"],
   sense: ["sense", "wire"],
+  plot: ["plot", "parts", "units", "text", "wire"],
   engine: ["engine", "wire"],
   boot: ["boot", "sync", "sense", "wire", "screens/start"],
-  state: ["state", "boot", "engine", "sync", "sense", "parts", "units", "text", "wire"],
-  screens: ["screens", "boot", "state", "sense", "sync", "parts", "units", "text", "wire"],
+  state: ["state", "boot", "engine", "sync", "sense", "plot", "parts", "units", "text", "wire"],
+  screens: ["screens", "boot", "state", "engine", "plot", "sense", "sync", "parts", "units", "text", "wire"],
   sw: [],
 };
 

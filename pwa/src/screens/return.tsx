@@ -103,8 +103,7 @@ function Words({ view }: { view: ReturnView }) {
       <div class="main-figures">
         {view.range && (
           <p class="range">
-            {view.range.figure}
-            <small>{view.range.unit}</small>
+            {view.range.figure} <small>{view.range.unit}</small>
           </p>
         )}
         {view.direction && <p class="direction">{view.direction}</p>}

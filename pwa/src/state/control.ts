@@ -9,6 +9,7 @@ import { play, soundState, unlockSound } from "../sense/sound";
 import { askStorage } from "../sense/storage";
 import { keepAwake, wakeState } from "../sense/wake";
 import { clockOffset, common, commonNow, measured } from "../sync/clock";
+import { uuidv7 } from "../sync/event";
 import type { Outbox } from "../sync/outbox";
 import { Sender } from "../sync/sender";
 import { Stream } from "../sync/stream";
@@ -95,7 +96,6 @@ async function add(
   body: Record<string, unknown>,
   flags: { drill?: boolean; test?: boolean } = {},
 ): Promise<LogEvent> {
-  const { uuidv7 } = await import("../sync/event");
   const now = Date.now();
   const offset = clockOffset();
   const event = await control.outbox.add({
