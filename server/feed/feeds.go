@@ -32,8 +32,9 @@ type Feeds struct {
 	sources []*source
 	updates chan Update
 
-	mu    sync.Mutex // guards state and the counts of every source
-	state *state
+	mu      sync.Mutex // guards all below, and the counts of every source
+	state   *state
+	traffic *traffic
 }
 
 // source is one feed with its counts.
@@ -65,6 +66,7 @@ type SourceStatus struct {
 	Checksum  uint64      `json:"bad_checksum"`
 	Malformed uint64      `json:"malformed"`
 	Unknown   uint64      `json:"unknown"`
+	AISUnread uint64      `json:"ais_unread"` // sound sentences whose message is not read here
 	LastAt    time.Time   `json:"last_at,omitzero"`
 	Address   string      `json:"address,omitempty"` // where it listens, if it does
 }
@@ -85,7 +87,7 @@ func New(cfg Config) (*Feeds, error) {
 	if cfg.Log == nil {
 		cfg.Log = slog.New(slog.DiscardHandler)
 	}
-	f := &Feeds{cfg: cfg, state: newState(), updates: make(chan Update, maxUpdates)}
+	f := &Feeds{cfg: cfg, state: newState(), traffic: newTraffic(), updates: make(chan Update, maxUpdates)}
 	f.state.variation = cfg.Variation
 	for i, raw := range cfg.URLs {
 		spec, err := ParseURL(raw)
@@ -217,6 +219,11 @@ func (f *Feeds) take(s *source, line string, lineAt time.Time) {
 		m := said{src: s.id, at: now, line: lineAt, sentence: sentence.Talker + sentence.Formatter}
 		fix = f.state.apply(m, body)
 		beacon = mobBeacon(body, now)
+		if v, ok := body.(*nmea.VDM); ok {
+			if beacon, err = f.traffic.hear(s.id, s.spec.URL, v, now); err != nil {
+				s.status.AISUnread++
+			}
+		}
 	}
 	f.mu.Unlock()
 	if fix.IsSet() {

@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"net"
 	"os"
+	"os/exec"
 	"path/filepath"
 	"runtime"
 	"testing"
@@ -158,4 +159,80 @@ func TestBadURLs(t *testing.T) {
 			t.Errorf("%q: %v", raw, err)
 		}
 	}
+}
+
+func nextBeacon(t *testing.T, f *Feeds) Beacon {
+	t.Helper()
+	for {
+		select {
+		case u := <-f.Updates():
+			if b, ok := u.Beacon.Get(); ok {
+				return b
+			}
+		case <-time.After(10 * time.Second):
+			t.Fatalf("no beacon; status %+v", f.Status())
+		}
+	}
+}
+
+// A person-overboard device that is active is told as one, with its place;
+// one under test as a test; a flood of other stations does not bury it.
+func TestBeaconsOverAIS(t *testing.T) {
+	ln, err := net.Listen("tcp", "127.0.0.1:0")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer ln.Close()
+	f := running(t, "tcp://"+ln.Addr().String())
+	c, err := ln.Accept()
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer c.Close()
+	for range 2000 {
+		fmt.Fprint(c, "!AIVDM,1,1,,A,15RTgt0PAso;90TKcjM8h6g208CQ,0*4A\r\n")
+	}
+	fmt.Fprint(c, "!AIVDM,1,1,,A,1>O5e@>P04we7P@Lh=L4lgvt0000,0*41\r\n")
+	b := nextBeacon(t, f)
+	if p, ok := b.Position.Get(); !ok || b.Test || b.MMSI != 972123456 || nav.Inverse(p, nav.PositionFromDegrees(50.25, -4.125)).RangeM > 1 {
+		t.Errorf("active device: %+v", b)
+	}
+	fmt.Fprint(c, "!AIVDM,1,1,,A,1>O5e@?P00we7P@Lh=L>4?vt0000,0*4E\r\n")
+	if b := nextBeacon(t, f); !b.Test || b.MMSI != 972123456 {
+		t.Errorf("device under test: %+v", b)
+	}
+	fmt.Fprint(c, "$IIMOB,001A4,A,101530,1,011226,101528,5015.00,N,00407.50,W,123.4,0.4,235012345,0*50\r\n")
+	if b := nextBeacon(t, f); b.Test || b.MMSI != 235012345 {
+		t.Errorf("on-board system: %+v", b)
+	}
+	if n := len(f.Targets()); n != 1 {
+		t.Errorf("%d targets", n)
+	}
+}
+
+// A real pair of serial ports.
+func TestSerialFeed(t *testing.T) {
+	socat, err := exec.LookPath("socat")
+	if err != nil {
+		t.Skip("socat is not installed: it makes the pair of ports")
+	}
+	dir := t.TempDir()
+	ours, theirs := filepath.Join(dir, "ours"), filepath.Join(dir, "theirs")
+	cmd := exec.Command(socat, "pty,raw,echo=0,link="+ours, "pty,raw,echo=0,link="+theirs)
+	if err := cmd.Start(); err != nil {
+		t.Fatal(err)
+	}
+	t.Cleanup(func() { _ = cmd.Process.Kill(); _ = cmd.Wait() })
+	var port *os.File
+	for deadline := time.Now().Add(10 * time.Second); port == nil && time.Now().Before(deadline); runtime.Gosched() {
+		port, _ = os.OpenFile(theirs, os.O_WRONLY, 0)
+	}
+	if port == nil {
+		t.Fatal("socat made no ports")
+	}
+	defer port.Close()
+	f := running(t, "serial:"+ours+"?baud=4800")
+	until(t, f, func(s SourceStatus) bool { return s.State == Live || s.State == Silent })
+	fmt.Fprint(port, rmcAt(54.1, 0))
+	nextFix(t, f)
 }
