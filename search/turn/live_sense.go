@@ -9,7 +9,11 @@ import (
 // move steps the reckoned state on, relative to the person, who is carried by
 // their leeway; one current carries both.
 func (l *Live) move(h Helm, dt float64) {
-	l.est = l.c.Model.step(l.est, h, dt)
+	m := l.c.Model
+	if l.stage < len(l.phases) && l.phases[l.stage].slow {
+		m.SpeedRatio *= slowPart
+	}
+	l.est = m.step(l.est, h, dt)
 	l.est.EastM -= l.c.PersonDrift.EastMs * dt
 	l.est.NorthM -= l.c.PersonDrift.NorthMs * dt
 }

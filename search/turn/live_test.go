@@ -84,7 +84,11 @@ func (v *sloppy) second() {
 	v.errDeg = v.errDeg*keep + v.rng.NormFloat64()*helmsmanErrDeg*math.Sqrt(1-keep*keep)
 	const dt = 0.1 // twice the model's step, for the time of the tests
 	for range int(math.Round(1 / dt)) {
-		v.s = v.m.step(v.s, v.helm(), dt)
+		h, m := v.helm(), v.m
+		if len(v.heard) > 0 && v.heard[0].a.Code == IdleTurn {
+			m.SpeedRatio *= slowPart
+		}
+		v.s = m.step(v.s, h, dt)
 		v.t += dt
 	}
 }
@@ -161,6 +165,19 @@ func TestFollowingTheOrdersComesBack(t *testing.T) {
 				}
 			})
 		}
+	}
+}
+
+// The slow circle of a small boat, steered by the orders.
+func TestFollowingTheSlowCircle(t *testing.T) {
+	m, good := yacht(t), 0
+	for seed := range uint64(100) {
+		if followed(t, SlowCircle, m, seed) <= m.RadiusM {
+			good++
+		}
+	}
+	if good < 95 {
+		t.Errorf("%d of 100 within one radius", good)
 	}
 }
 

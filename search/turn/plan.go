@@ -3,6 +3,7 @@ package turn
 import (
 	"fmt"
 	"math"
+	"slices"
 	"time"
 
 	"wakeback/drift/nav"
@@ -85,7 +86,7 @@ func Plan(n Name, c Case) (Result, error) {
 	r.runBack()
 	res := Result{
 		Name: n, Side: side, Orders: r.orders, Path: r.path,
-		TurnedS: turnedS, TotalS: r.t, ClosestM: r.closestM, Cautions: cautions[n],
+		TurnedS: turnedS, TotalS: r.t, ClosestM: r.closestM, Cautions: cautionsFor(n),
 	}
 	if shift := ShiftDeg(n); shift != 0 {
 		if err := res.angles(c.Model, n, shift); err != nil {
@@ -182,8 +183,16 @@ func (c Case) sequence(n Name) ([]phase, error) {
 // abaft the beam (common practice, from memory); the middle is taken.
 const raceTrackAbaft = 90 + 37.5
 
-// cautions of the manoeuvres; each is a fact of the trade with its source in
-// the table of sources.
+// cautionsFor is what to take care of in a manoeuvre, with what holds for all.
+func cautionsFor(n Name) []string {
+	return append(slices.Clone(cautions[n]),
+		"propeller: out of gear whenever the person may be near it",
+		"traffic and shoal water: nothing here has looked at a chart; a lee shore bounds the turn",
+		"under sail with the engine on: the boom goes over in a turn through the wind's eye or stern, and lines may be in the water")
+}
+
+// cautions of the manoeuvres (common practice, as the summaries of the IAMSAR
+// Manual vol. III and of Transport Canada TP10038 that were read have it).
 var cautions = map[Name][]string{
 	Single:     {"propeller: the stern swings towards the side of the fall only when the helm is put the other way", "the approach is not straight; keep the person in sight"},
 	Williamson: {"the vessel goes far from the person before it comes back", "60 degrees is a textbook figure; the vessel's own angle is shown beside it"},
