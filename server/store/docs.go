@@ -10,12 +10,16 @@ import (
 )
 
 // ErrDoc is wrapped when a document or its name cannot be kept.
-var ErrDoc = errors.New("a document needs a kind and a name without zero bytes, and has to be JSON")
+var ErrDoc = errors.New("a document needs a kind and a name, without zero bytes and below 256 bytes, and has to be JSON")
+
+// longestName bounds the name of a document; our choice, a hash in
+// hexadecimal has room.
+const longestName = 256
 
 // PutDoc keeps a JSON document under a kind and a name, in the place of what
 // was there. It returns when it is on disk.
 func (s *Store) PutDoc(kind, name string, doc []byte) error {
-	if kind == "" || name == "" || strings.ContainsRune(kind+name, 0) || !json.Valid(doc) || string(doc) == "null" {
+	if kind == "" || name == "" || len(kind)+len(name) > longestName || len(doc) > maxFrame/2 || strings.ContainsRune(kind+name, 0) || !json.Valid(doc) || string(doc) == "null" {
 		return fmt.Errorf("keep document %s %q: %w", kind, name, ErrDoc)
 	}
 	return s.changeDoc(docChange{kind, name, append(json.RawMessage(nil), doc...)})
@@ -27,12 +31,12 @@ func (s *Store) DeleteDoc(kind, name string) error { return s.changeDoc(docChang
 func (s *Store) changeDoc(d docChange) error {
 	s.mu.Lock()
 	defer s.mu.Unlock()
-	payload, err := json.Marshal(d)
+	f, err := docFrame(s.head+1, d)
 	if err != nil {
-		return fmt.Errorf("keep document %s %q: %w", d.Kind, d.Name, err)
+		return err
 	}
 	key := docKey{d.Kind, d.Name}
-	err = s.commit(frame{kind: frameDoc, payload: payload}, func(tx *bbolt.Tx) error {
+	err = s.commit(f, func(tx *bbolt.Tx) error {
 		if d.Doc == nil {
 			return tx.Bucket(bucketDocs).Delete(docName(key))
 		}

@@ -21,13 +21,13 @@ var (
 // Errors of writing.
 var (
 	// ErrNotDurable is wrapped when the store cannot write, now and until it is
-	// opened anew. Senders keep what they have.
+	// renewed or opened anew. Senders keep what they have.
 	ErrNotDurable = errors.New("not saved: the store cannot write")
 	ErrDiskFull   = errors.New("the disk is full")
 )
 
 // ConflictError says that an event of this id is stored with other content.
-// The stored one stays.
+// The stored one stays; the other is kept aside: see [Store.Conflicts].
 type ConflictError struct{ ID incident.EventID }
 
 func (e *ConflictError) Error() string {
@@ -37,9 +37,9 @@ func (e *ConflictError) Error() string {
 // classify adds what a person can do something about to an error of the system.
 func classify(err error) error {
 	switch {
-	case err == nil:
-		return nil
-	case errors.Is(err, syscall.ENOSPC), errors.Is(err, syscall.EDQUOT), errors.Is(err, berrors.ErrMaxSizeReached):
+	case err == nil, errors.Is(err, ErrDiskFull), errors.Is(err, ErrLocked), errors.Is(err, ErrReadOnly):
+		return err
+	case errors.Is(err, syscall.ENOSPC), errors.Is(err, syscall.EDQUOT), errors.Is(err, syscall.EFBIG), errors.Is(err, berrors.ErrMaxSizeReached):
 		return fmt.Errorf("%w: %w", ErrDiskFull, err)
 	case errors.Is(err, berrors.ErrTimeout):
 		return fmt.Errorf("%w: %w", ErrLocked, err)

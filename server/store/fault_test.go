@@ -1,6 +1,7 @@
 package store
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
 	"io"
@@ -8,139 +9,152 @@ import (
 	"os/exec"
 	"path/filepath"
 	"strings"
-	"syscall"
 	"testing"
 	"time"
 
+	"wakeback/drift/nav"
 	"wakeback/search/incident"
 )
 
-// faultyJournal fails its n-th call, in one of the ways a disk does. What was
-// written and not flushed is lost at crash, as with a power cut.
-type faultyJournal struct {
-	path    string
-	f       *os.File
-	n, at   int
-	how     string
-	flushed int64 // bytes that are on the medium
-	written int64
-}
-
-func (j *faultyJournal) due() bool { j.n++; return j.n == j.at }
-
-func (j *faultyJournal) Write(p []byte) (int, error) {
-	if j.due() {
-		switch j.how {
-		case "error":
-			return 0, syscall.EIO
-		case "full":
-			return 0, syscall.ENOSPC
-		case "short", "torn":
-			n, _ := j.f.Write(p[:len(p)/2])
-			j.written += int64(n)
-			if j.how == "short" {
-				return n, nil
-			}
-			return n, syscall.EIO
-		}
-	}
-	n, err := j.f.Write(p)
-	j.written += int64(n)
-	return n, err
-}
-
-func (j *faultyJournal) Sync() error {
-	if j.due() {
-		return syscall.EIO
-	}
-	j.flushed = j.written
-	return j.f.Sync()
-}
-
-func (j *faultyJournal) Close() error { return j.f.Close() }
-
-// crash ends the file where the medium has it.
-func (j *faultyJournal) crash(t *testing.T) {
-	t.Helper()
-	if err := os.Truncate(j.path, j.flushed); err != nil {
-		t.Fatal(err)
-	}
-}
-
-func faulty(at int, how string, into **faultyJournal) func(string) (JournalFile, error) {
-	return func(path string) (JournalFile, error) {
-		f, err := os.OpenFile(path, os.O_CREATE|os.O_APPEND|os.O_RDWR, 0o600)
-		if err != nil {
-			return nil, err
-		}
-		size, err := f.Seek(0, io.SeekEnd)
-		if err != nil {
-			return nil, err
-		}
-		*into = &faultyJournal{path: path, f: f, at: at, how: how, flushed: size, written: size}
-		return *into, nil
-	}
-}
-
-// The n-th call on the journal fails, for every n until a run has no fault,
-// and the power is cut behind it. What was acknowledged is there, in order,
-// once; what comes again changes nothing; nothing is acknowledged after a
-// failure.
-func TestJournalFailsAtEveryCall(t *testing.T) {
-	for _, how := range []string{"error", "full", "short", "torn"} {
-		for n := 1; ; n++ {
-			if !faultRound(t, n, how) {
-				if n < 10 {
-					t.Fatalf("%s: only %d calls", how, n)
+// The n-th call on the disk fails, for every n until a run has no fault, from
+// the first opening on, and then the power is cut. What was acknowledged is
+// there, in order, once; what comes again changes nothing; nothing is
+// acknowledged after a failure.
+func TestDiskFailsAtEveryCall(t *testing.T) {
+	for _, how := range []string{"error", "full", "short", "torn", "lie"} {
+		for _, undo := range []bool{false, true} {
+			for n := 1; ; n++ {
+				if hit := faultRound(t, n, how, undo); hit == "" {
+					if n < 20 {
+						t.Fatalf("%s: only %d calls", how, n)
+					}
+					break
 				}
+			}
+		}
+	}
+}
+
+// faultRound runs a few commits with a fault in the n-th call and returns the
+// call that it came to.
+func faultRound(t *testing.T, n int, how string, undo bool) (hit string) {
+	t.Helper()
+	dir, fs := quickDir(t), newFaultFS(n, how)
+	defer func() {
+		if t.Failed() {
+			t.Logf("%s in call %d (%s), undo %t", how, n, fs.hit, undo)
+		}
+	}()
+	c := newChain('a')
+	var sent []incident.Event
+	acknowledged, docs := 0, 0
+	s, _, err := Open(t.Context(), Options{Dir: dir, FS: fs})
+	if err == nil {
+		sent, acknowledged, docs = workload(t, s, c)
+		_ = s.Close()
+	} else if fs.hit == "" {
+		t.Fatalf("open without a fault: %v", err)
+	}
+	fs.crash(t, undo)
+
+	s, r := open(t, Options{Dir: dir})
+	checkChain(t, all(t, s), uint64(acknowledged))
+	if got, _ := s.Docs("device"); len(got) < docs {
+		t.Fatalf("%d of %d acknowledged documents are there", len(got), docs)
+	}
+	if r.Mode == Emptied {
+		t.Fatalf("both logs were lost: %+v", r)
+	}
+	for len(sent) > 0 {
+		kept := keep(t, s, sent[0])
+		if kept[0].DeviceSeq != sent[0].DeviceSeq {
+			t.Fatalf("sent %d, kept %d", sent[0].DeviceSeq, kept[0].DeviceSeq)
+		}
+		sent = sent[1:]
+	}
+	checkChain(t, all(t, s), c.last.DeviceSeq)
+	if got := uint64(len(all(t, s))); got != c.last.DeviceSeq {
+		t.Fatalf("%d events after sending all %d again", got, c.last.DeviceSeq)
+	}
+	closeStore(t, s)
+	return fs.hit
+}
+
+// workload commits pairs of events with documents and tracks in between.
+func workload(t *testing.T, s *Store, c *chain) (sent []incident.Event, acknowledged, docs int) {
+	t.Helper()
+	failed := false
+	check := func(what string, err error) bool {
+		switch {
+		case err == nil && failed:
+			t.Fatalf("%s is acknowledged after a failure", what)
+		case err != nil && !errors.Is(err, ErrNotDurable):
+			t.Fatalf("%s: %v", what, err)
+		}
+		failed = failed || err != nil
+		return err == nil
+	}
+	for i := range 4 {
+		batch := []incident.Event{c.next(t, "a"), c.next(t, "b")}
+		sent = append(sent, batch...)
+		_, err := s.Append(batch)
+		if check("commit", err) {
+			acknowledged = len(sent)
+		}
+		if check("document", s.PutDoc("device", fmt.Sprint(i), []byte(`{}`))) {
+			docs++
+		}
+		if err := s.AppendTrack(c.device, []nav.Fix{{At: t0.Add(time.Duration(i) * time.Hour)}}); err != nil && !errors.Is(err, ErrNotDurable) {
+			t.Fatal(err)
+		}
+		if got := len(all(t, s)); got != acknowledged {
+			t.Fatalf("%d events readable, %d acknowledged", got, acknowledged)
+		}
+		if h := s.Health(); h.Durable == failed {
+			t.Fatalf("health %+v after a failure", h)
+		}
+	}
+	return sent, acknowledged, docs
+}
+
+// The n-th call fails while a damaged file is made again from the journal,
+// and while a damaged journal is made again from the file; then the power is
+// cut. Whatever was there before is there after the next start.
+func TestDiskFailsWhileMending(t *testing.T) {
+	origin := t.TempDir()
+	want := filled(t, origin, 12)
+	db, journal := slurp(t, origin, dbName), slurp(t, origin, journalName)
+	badDB, badJournal := bytes.Clone(db), bytes.Clone(journal)
+	clear(badDB[2*os.Getpagesize():])
+	badJournal[len(badJournal)/2] ^= 1
+	for name, files := range map[string][2][]byte{
+		"file damaged": {badDB, journal}, "file missing": {nil, journal},
+		"journal damaged": {db, badJournal}, "journal missing": {db, nil},
+	} {
+		for n := 1; ; n++ {
+			dir, fs := quickDir(t), newFaultFS(n, []string{"error", "torn", "full"}[n%3])
+			for i, name := range []string{dbName, journalName} {
+				if files[i] != nil {
+					put(t, dir, name, files[i])
+				}
+			}
+			if s, _, err := Open(t.Context(), Options{Dir: dir, FS: fs}); err == nil {
+				if got := len(all(t, s)); got != len(want) {
+					t.Fatalf("%s, %s: %d of %d events", name, fs.hit, got, len(want))
+				}
+				_ = s.Close()
+			}
+			fs.crash(t, n%2 == 0)
+			s, r := open(t, Options{Dir: dir})
+			if got := all(t, s); len(got) != len(want) || r.Mode == Emptied || r.Mode == Fresh {
+				t.Fatalf("%s, %s: %d of %d events, %+v", name, fs.hit, len(got), len(want), r)
+			}
+			closeStore(t, s)
+			if fs.hit == "" {
 				break
 			}
 		}
 	}
-}
-
-// faultRound runs a few commits with a fault in the n-th call and reports
-// whether it came to that.
-func faultRound(t *testing.T, n int, how string) (hit bool) {
-	t.Helper()
-	dir := t.TempDir()
-	var j *faultyJournal
-	s, _, err := Open(t.Context(), Options{Dir: dir, OpenJournal: faulty(n, how, &j)})
-	if err != nil {
-		t.Fatalf("%s %d: open: %v", how, n, err)
-	}
-	c := newChain('a')
-	var sent []incident.Event
-	acknowledged := 0
-	for i := range 6 {
-		batch := []incident.Event{c.next(t, "a"), c.next(t, "b")}
-		sent = append(sent, batch...)
-		_, err := s.Append(batch)
-		switch {
-		case err == nil && hit:
-			t.Fatalf("%s %d: commit %d is acknowledged after a failure", how, n, i)
-		case err == nil:
-			acknowledged = len(sent)
-		case !errors.Is(err, ErrNotDurable):
-			t.Fatalf("%s %d: %v", how, n, err)
-		default:
-			hit = true
-		}
-		if got := len(all(t, s)); got != acknowledged {
-			t.Fatalf("%s %d: %d events readable, %d acknowledged", how, n, got, acknowledged)
-		}
-	}
-	_ = s.Close()
-	j.crash(t)
-	s, _ = open(t, Options{Dir: dir})
-	checkChain(t, all(t, s), uint64(acknowledged))
-	keep(t, s, sent...)
-	checkChain(t, all(t, s), uint64(len(sent)))
-	if got := len(all(t, s)); got != len(sent) {
-		t.Fatalf("%s %d: %d events after sending all %d again", how, n, got, len(sent))
-	}
-	closeStore(t, s)
-	return hit
 }
 
 // filled makes a store with some events and a document, and closes it.
@@ -175,7 +189,7 @@ func TestDamagedFileIsRebuilt(t *testing.T) {
 	modes := map[Mode]int{}
 	for name, damage := range damages {
 		for at := 0; at+page <= len(db); at += page {
-			dir := t.TempDir()
+			dir := quickDir(t)
 			put(t, dir, dbName, damage(append([]byte(nil), db...), at))
 			put(t, dir, journalName, journal)
 			begin := time.Now()
@@ -209,7 +223,7 @@ func TestDamagedJournal(t *testing.T) {
 	want := filled(t, origin, 15)
 	db, journal := slurp(t, origin, dbName), slurp(t, origin, journalName)
 	for at := 0; at < len(journal); at += 401 {
-		dir := t.TempDir()
+		dir := quickDir(t)
 		broken := append([]byte(nil), journal...)
 		broken[at] ^= 0x20
 		put(t, dir, dbName, db)

@@ -5,38 +5,27 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
-	"strconv"
-	"time"
 
 	"go.etcd.io/bbolt"
 
 	"wakeback/search/incident"
 )
 
-// Buckets of the bbolt file.
+// Buckets of wakeback.db. A backup has the bucket of tracks as well.
 var (
 	bucketMeta   = []byte("meta")   // "schema", "epoch", "head"
 	bucketEvents = []byte("events") // number, 8 bytes big endian -> JSON
 	bucketDocs   = []byte("docs")   // kind, 0, name -> JSON
-	bucketTracks = []byte("tracks") // device, 0, start in ms, 8 bytes -> block
 	bucketAside  = []byte("aside")  // id, 0, hash -> JSON of a conflicting event
+	bucketTracks = []byte("tracks") // in tracks.db: device, 0, start in ms -> block
 	keySchema    = []byte("schema")
 	keyEpoch     = []byte("epoch")
 	keyHead      = []byte("head") // number of the newest change, 8 bytes
 )
 
-// schema is the version of the layout that this program writes.
-const schema = 1
-
-// migrations lead from each version to the next: migrations[0] from 1 to 2.
-var migrations []func(*bbolt.Tx) error
-
-// lockWait is how long opening waits for another process to let go.
-const lockWait = time.Second
-
-// boltOptions: the map freelist is the faster for large files, and not
-// flushing it leaves one thing less that can be torn; it is found anew at
-// opening.
+// boltOptions: the map freelist is the faster one for large files. It is not
+// flushed, which leaves one thing less that can be torn (bbolt panics on a
+// damaged one); it is found anew at opening. NoSync is never set.
 func boltOptions(readOnly bool, maxSize int) *bbolt.Options {
 	return &bbolt.Options{
 		Timeout: lockWait, NoFreelistSync: true, FreelistType: bbolt.FreelistMapType,
@@ -48,45 +37,6 @@ func seqKey(n incident.Seq) []byte { return binary.BigEndian.AppendUint64(nil, u
 
 func docName(k docKey) []byte { return []byte(k.kind + "\x00" + k.name) }
 
-// readImage walks the whole file. It is meant for a process of its own, since
-// bbolt can end its process on a damaged page.
-func readImage(db *bbolt.DB) (image, error) {
-	im := image{docs: make(map[docKey][]byte)}
-	err := db.View(func(tx *bbolt.Tx) error {
-		for err := range tx.Check() {
-			return fmt.Errorf("the file's own check: %w", err)
-		}
-		if err := checkSchema(tx); err != nil {
-			return err
-		}
-		meta := tx.Bucket(bucketMeta)
-		im.epoch, im.head = string(meta.Get(keyEpoch)), binary.BigEndian.Uint64(meta.Get(keyHead))
-		if err := im.readEvents(tx); err != nil {
-			return err
-		}
-		if err := readTracks(tx); err != nil {
-			return err
-		}
-		return tx.Bucket(bucketDocs).ForEach(func(k, v []byte) error {
-			kind, name := splitKey(k)
-			im.docs[docKey{kind, name}] = append([]byte(nil), v...)
-			return nil
-		})
-	})
-	return im, err
-}
-
-func (im *image) readEvents(tx *bbolt.Tx) error {
-	return tx.Bucket(bucketEvents).ForEach(func(k, v []byte) error {
-		var e incident.Event
-		if err := json.Unmarshal(v, &e); err != nil {
-			return fmt.Errorf("%w: %w", errEvents, err)
-		}
-		im.events = append(im.events, e)
-		return nil
-	})
-}
-
 func splitKey(k []byte) (kind, name string) {
 	for i, b := range k {
 		if b == 0 {
@@ -96,79 +46,123 @@ func splitKey(k []byte) (kind, name string) {
 	return string(k), ""
 }
 
-var errSchema = errors.New("not a store of this program")
-
-// checkSchema reads the version; one that is too new is refused.
-func checkSchema(tx *bbolt.Tx) error {
+// readImage reads all of wakeback.db but the tracks.
+func readImage(tx *bbolt.Tx) (image, error) {
+	im := image{docs: make(map[docKey][]byte)}
+	if err := checkSchema(tx); err != nil {
+		return im, err
+	}
 	meta := tx.Bucket(bucketMeta)
-	if meta == nil {
-		return errSchema
+	im.epoch, im.head = string(meta.Get(keyEpoch)), binary.BigEndian.Uint64(meta.Get(keyHead))
+	var err error
+	if im.events, err = readEvents(tx.Bucket(bucketEvents)); err != nil {
+		return im, err
 	}
-	n, err := strconv.Atoi(string(meta.Get(keySchema)))
-	if err != nil || n < 1 {
-		return errSchema
+	if im.conflicts, err = readEvents(tx.Bucket(bucketAside)); err != nil {
+		return im, err
 	}
-	if n > schema {
-		return fmt.Errorf("%w (version %d, this program knows %d)", ErrNewer, n, schema)
-	}
-	for _, name := range [][]byte{bucketEvents, bucketDocs, bucketTracks, bucketAside} {
-		if tx.Bucket(name) == nil {
-			return fmt.Errorf("%w: no bucket %s", errSchema, name)
+	return im, tx.Bucket(bucketDocs).ForEach(func(k, v []byte) error {
+		kind, name := splitKey(k)
+		im.docs[docKey{kind, name}] = append([]byte(nil), v...)
+		if !json.Valid(v) {
+			return fmt.Errorf("document %s %q is damaged", kind, name)
 		}
-	}
-	if len(meta.Get(keyEpoch)) != 32 || len(meta.Get(keyHead)) != 8 {
-		return fmt.Errorf("%w: no epoch or no head", errSchema)
-	}
-	return nil
+		return nil
+	})
 }
 
-// migrate brings an older file to this program's version, in one transaction.
-func migrate(db *bbolt.DB) error {
-	return db.Update(func(tx *bbolt.Tx) error {
-		meta := tx.Bucket(bucketMeta)
-		n, err := strconv.Atoi(string(meta.Get(keySchema)))
+func readEvents(b *bbolt.Bucket) (events []incident.Event, err error) {
+	err = b.ForEach(func(_, v []byte) error {
+		var e incident.Event
+		if err := json.Unmarshal(v, &e); err != nil {
+			return fmt.Errorf("%w: %w", errEvents, err)
+		}
+		events = append(events, e)
+		return nil
+	})
+	return events, err
+}
+
+// readFile reads the image of a file that was walked before.
+func readFile(path string) (im image, err error) {
+	err = guarded(func() error {
+		db, err := bbolt.Open(path, 0o600, boltOptions(true, 0))
 		if err != nil {
-			return errSchema
+			return err
 		}
-		for ; n < schema; n++ {
-			if err := migrations[n-1](tx); err != nil {
-				return fmt.Errorf("bring the store from version %d to %d: %w", n, n+1, err)
-			}
-		}
-		return meta.Put(keySchema, []byte(strconv.Itoa(schema)))
+		defer db.Close()
+		return db.View(func(tx *bbolt.Tx) error {
+			im, err = readImage(tx)
+			return err
+		})
 	})
+	return im, err
 }
 
-// create fills a new file with an image.
-func create(db *bbolt.DB, im image) error {
-	return db.Update(func(tx *bbolt.Tx) error {
-		for _, name := range [][]byte{bucketMeta, bucketEvents, bucketDocs, bucketTracks, bucketAside} {
-			if _, err := tx.CreateBucketIfNotExists(name); err != nil {
-				return err
-			}
+// createFile makes wakeback.db from an image, whole or not at all: a power
+// cut in the midst of making one must not look like damage. What stands there
+// is set aside, under a name with why in it.
+func (o *opening) createFile(im image, why string) error {
+	tmp := o.db + ".new"
+	if err := removeIf(o.opt.FS, tmp); err != nil {
+		return err
+	}
+	db, err := bbolt.Open(tmp, 0o600, boltOptions(false, o.opt.MaxSize))
+	if err != nil {
+		return err
+	}
+	err = db.Update(func(tx *bbolt.Tx) error { return fillFile(tx, im) })
+	if err = errors.Join(err, db.Close()); err != nil {
+		return fmt.Errorf("make %s: %w", o.db, err)
+	}
+	if err := o.aside(o.db, why); err != nil {
+		return err
+	}
+	return move(o.opt.FS, tmp, o.db)
+}
+
+func fillFile(tx *bbolt.Tx, im image) error {
+	for _, name := range [][]byte{bucketMeta, bucketEvents, bucketDocs, bucketAside} {
+		if _, err := tx.CreateBucketIfNotExists(name); err != nil {
+			return err
 		}
-		meta := tx.Bucket(bucketMeta)
-		err := errors.Join(
-			meta.Put(keySchema, []byte(strconv.Itoa(schema))),
-			meta.Put(keyEpoch, []byte(im.epoch)),
-			putHead(tx, im.head),
-			putDocs(tx, im.docs),
-		)
-		for _, t := range im.tracks {
-			err = errors.Join(err, putTrack(tx, t.Device, t.fixes()))
-		}
-		return errors.Join(err, putEvents(tx, im.events))
-	})
+	}
+	return errors.Join(putSchema(tx, schema), putImage(tx, im, 0))
+}
+
+// putImage writes an image into the file, its events from one on.
+func putImage(tx *bbolt.Tx, im image, from int) error {
+	return errors.Join(
+		tx.Bucket(bucketMeta).Put(keyEpoch, []byte(im.epoch)),
+		putHead(tx, im.head),
+		putDocs(tx, im.docs),
+		putEvents(tx, im.events[from:]),
+		putConflicts(tx, im.conflicts),
+	)
 }
 
 func putEvents(tx *bbolt.Tx, events []incident.Event) error {
 	b := tx.Bucket(bucketEvents)
+	b.FillPercent = 0.95 // numbers only grow, so that pages are filled once
 	for _, e := range events {
 		text, err := json.Marshal(e)
 		if err != nil {
 			return fmt.Errorf("write event %s: %w", e.ID, err)
 		}
 		if err := b.Put(seqKey(e.Seq), text); err != nil {
+			return fmt.Errorf("write event %s: %w", e.ID, err)
+		}
+	}
+	return nil
+}
+
+func putConflicts(tx *bbolt.Tx, events []incident.Event) error {
+	for _, e := range events {
+		text, err := json.Marshal(e)
+		if err != nil {
+			return fmt.Errorf("write event %s: %w", e.ID, err)
+		}
+		if err := tx.Bucket(bucketAside).Put([]byte(string(e.ID)+"\x00"+e.Hash), text); err != nil {
 			return fmt.Errorf("write event %s: %w", e.ID, err)
 		}
 	}

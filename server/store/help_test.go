@@ -1,6 +1,7 @@
 package store
 
 import (
+	"os"
 	"testing"
 
 	"go.etcd.io/bbolt"
@@ -19,4 +20,16 @@ func setSchema(t *testing.T, path, version string) {
 	if err := db.Close(); err != nil {
 		t.Fatal(err)
 	}
+}
+
+// quickDir is a folder in memory, where there is one, for tests that make
+// their faults themselves and open hundreds of stores.
+func quickDir(t *testing.T) string {
+	t.Helper()
+	dir, err := os.MkdirTemp("/dev/shm", "store")
+	if err != nil {
+		return t.TempDir()
+	}
+	t.Cleanup(func() { _ = os.RemoveAll(dir) })
+	return dir
 }

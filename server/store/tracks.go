@@ -1,13 +1,13 @@
 package store
 
 import (
-	"bytes"
-	"encoding/binary"
-	"encoding/json"
+	"context"
 	"errors"
 	"fmt"
-	"hash/crc32"
-	"math"
+	"log/slog"
+	"os"
+	"path/filepath"
+	"sync"
 	"time"
 
 	"go.etcd.io/bbolt"
@@ -16,222 +16,129 @@ import (
 	"wakeback/search/incident"
 )
 
-// A block holds up to blockFixes fixes of one device: CRC-32C of the rest (4
-// bytes), then for each fix varints of the differences to the one before:
-// time in ms, latitude and longitude in 1e-7 degree, and of the values speed
-// in 0.01 kn, course in 0.1 degree and error in 0.1 m, each plus one, 0 being
-// absent. Steady steaming at 1 Hz comes to about 11 bytes a fix: 40 kB an hour.
-const blockFixes = 600
+// tracks is the positions, in files of their own. What goes wrong here never
+// keeps a mark from being kept.
+type tracks struct {
+	fs            FS
+	log           *slog.Logger
+	now           func() time.Time
+	path, journal string
 
-// errTrack is wrapped when a block does not check.
-var errTrack = errors.New("a stretch of track is damaged")
+	// mu makes commits one after the other, and guards what they use.
+	mu      sync.Mutex
+	out     journal
+	flushed time.Time // when the journal was
 
-func encodeFixes(fixes []nav.Fix) []byte {
-	out := make([]byte, 4, 4+12*len(fixes))
-	var t, lat, lon int64
-	for _, f := range fixes {
-		ft := f.At.UnixMilli()
-		flat, flon := int64(math.Round(f.Position.LatDeg()*1e7)), int64(math.Round(f.Position.LonDeg()*1e7))
-		out = binary.AppendVarint(out, ft-t)
-		out = binary.AppendVarint(out, flat-lat)
-		out = binary.AppendVarint(out, flon-lon)
-		out = appendOpt(out, f.SogKn, 100)
-		cog := nav.None[float64]()
-		if c, ok := f.CogTrue.Get(); ok {
-			cog = nav.Some(float64(c))
-		}
-		out = appendOpt(out, cog, 10)
-		out = appendOpt(out, f.ErrorM, 10)
-		t, lat, lon = ft, flat, flon
-	}
-	binary.BigEndian.PutUint32(out, crc32.Checksum(out[4:], crcTable))
-	return out
+	// state guards which file is open and what failed; never held while the disk works.
+	state  sync.RWMutex
+	db     *bbolt.DB
+	failed error
+
+	back sync.WaitGroup // reading back from the journal
+	stop context.CancelFunc
 }
 
-func appendOpt(dst []byte, v nav.Opt[float64], perUnit float64) []byte {
-	x, ok := v.Get()
-	if !ok || !(x >= 0 && x < 1e9) {
-		return binary.AppendUvarint(dst, 0)
+func newTracks(opt Options) *tracks {
+	return &tracks{
+		fs: opt.FS, log: opt.Log, now: opt.Now,
+		stop: func() {},
+		path: filepath.Join(opt.Dir, tracksName), journal: filepath.Join(opt.JournalDir, tracksJournalName),
 	}
-	return binary.AppendUvarint(dst, uint64(math.Round(x*perUnit))+1)
 }
 
-func decodeFixes(block []byte) ([]nav.Fix, error) {
-	if len(block) < 4 || binary.BigEndian.Uint32(block) != crc32.Checksum(block[4:], crcTable) {
-		return nil, errTrack
+// current is the file that is open.
+func (t *tracks) current() (*bbolt.DB, error) {
+	t.state.RLock()
+	defer t.state.RUnlock()
+	if t.db == nil {
+		return nil, errors.Join(errors.New("the file of tracks is not open"), t.failed)
 	}
-	r := bytes.NewReader(block[4:])
-	var fixes []nav.Fix
-	var t, lat, lon int64
-	for r.Len() > 0 {
-		var d [3]int64
-		var o [3]uint64
-		var err error
-		for i := range d {
-			if d[i], err = binary.ReadVarint(r); err != nil {
-				return nil, fmt.Errorf("%w: %w", errTrack, err)
-			}
-		}
-		for i := range o {
-			if o[i], err = binary.ReadUvarint(r); err != nil {
-				return nil, fmt.Errorf("%w: %w", errTrack, err)
-			}
-		}
-		t, lat, lon = t+d[0], lat+d[1], lon+d[2]
-		f := nav.Fix{
-			At:       time.UnixMilli(t).UTC(),
-			Position: nav.PositionFromDegrees(float64(lat)/1e7, float64(lon)/1e7),
-			SogKn:    opt(o[0], 100), ErrorM: opt(o[2], 10),
-		}
-		if c, ok := opt(o[1], 10).Get(); ok {
-			f.CogTrue = nav.Some(nav.True(c))
-		}
-		fixes = append(fixes, f)
-	}
-	return fixes, nil
+	return t.db, nil
 }
 
-func opt(v uint64, perUnit float64) nav.Opt[float64] {
-	if v == 0 {
-		return nav.None[float64]()
+func (t *tracks) problem() error {
+	t.state.RLock()
+	defer t.state.RUnlock()
+	return t.failed
+}
+
+func (t *tracks) fail(err error) error {
+	err = classify(err)
+	t.state.Lock()
+	t.failed = err
+	t.state.Unlock()
+	t.log.Error("positions are not recorded any more", "error", err)
+	return fmt.Errorf("%w: %w", ErrNotDurable, err)
+}
+
+// AppendTrack keeps fixes of a device, in any order. When it returns they are
+// on disk, in one file; the journal of tracks is flushed once a minute. It
+// shares no lock with [Store.Append].
+func (s *Store) AppendTrack(device incident.DeviceID, fixes []nav.Fix) error {
+	return s.tracks.append(string(device), nav.NewTrack(fixes).Fixes())
+}
+
+// trackFlush is how much of its second copy a track may lose with the power.
+// Our choice, because each flush is felt by a mark that comes with it.
+const trackFlush = time.Minute
+
+func (t *tracks) append(device string, fixes []nav.Fix) error {
+	if len(fixes) == 0 {
+		return nil
 	}
-	return nav.Some(float64(v-1) / perUnit)
-}
-
-func trackKey(device incident.DeviceID, at time.Time) []byte {
-	return binary.BigEndian.AppendUint64([]byte(string(device)+"\x00"), uint64(at.UnixMilli()))
-}
-
-// putTrack adds fixes, in order of time, to the device's newest block while
-// there is room in it and they are later, else in a new one.
-func putTrack(tx *bbolt.Tx, device incident.DeviceID, fixes []nav.Fix) error {
-	b := tx.Bucket(bucketTracks)
-	for len(fixes) > 0 {
-		key := trackKey(device, fixes[0].At)
-		block := fixes[:min(len(fixes), blockFixes)]
-		rest := fixes[len(block):]
-		if last, old := lastBlock(b, device); last != nil && len(old) < blockFixes && !fixes[0].At.Before(old[len(old)-1].At) {
-			n := min(len(fixes), blockFixes-len(old))
-			key, block, rest = last, append(old, fixes[:n]...), fixes[n:]
-		} else if taken := b.Get(key); taken != nil {
-			// A block that begins at the same moment: fixes that came late.
-			old, err := decodeFixes(taken)
-			if err != nil {
-				return err
-			}
-			block = nav.NewTrack(append(old, block...)).Fixes()
+	f, err := trackFrame(device, fixes)
+	if err != nil {
+		return err
+	}
+	t.mu.Lock()
+	defer t.mu.Unlock()
+	if err := t.problem(); err != nil {
+		return fmt.Errorf("%w: %w", ErrNotDurable, err)
+	}
+	db, err := t.current()
+	if err != nil {
+		return fmt.Errorf("%w: %w", ErrNotDurable, err)
+	}
+	err = guarded(func() error {
+		return db.Update(func(tx *bbolt.Tx) error { return putTrack(tx.Bucket(bucketTracks), device, fixes) })
+	})
+	if err == nil {
+		now := t.now()
+		flush := now.Sub(t.flushed).Abs() >= trackFlush
+		if err = t.out.write(f, flush); err == nil && flush {
+			t.flushed = now
 		}
-		if err := b.Put(key, encodeFixes(block)); err != nil {
-			return fmt.Errorf("write the track of %s: %w", device, err)
-		}
-		fixes = rest
+	}
+	if err != nil {
+		return t.fail(fmt.Errorf("write the track of %s: %w", device, err))
 	}
 	return nil
 }
 
-// lastBlock is the device's newest block; nil when there is none or it does
-// not check.
-func lastBlock(b *bbolt.Bucket, device incident.DeviceID) (key []byte, fixes []nav.Fix) {
-	c := b.Cursor()
-	prefix := []byte(string(device) + "\x00")
-	var v []byte
-	if k, _ := c.Seek([]byte(string(device) + "\x01")); k == nil {
-		key, v = c.Last()
-	} else {
-		key, v = c.Prev()
-	}
-	if key == nil || !bytes.HasPrefix(key, prefix) {
-		return nil, nil
-	}
-	fixes, err := decodeFixes(v)
-	if err != nil || len(fixes) == 0 {
-		return nil, nil
-	}
-	return append([]byte(nil), key...), fixes
-}
-
-func readTracks(tx *bbolt.Tx) error {
-	return tx.Bucket(bucketTracks).ForEach(func(_, v []byte) error {
-		_, err := decodeFixes(v)
-		return err
-	})
-}
-
-// trackChange is fixes of one device as the journal has them.
-type trackChange struct {
-	Device incident.DeviceID `json:"device"`
-	Block  []byte            `json:"block"`
-}
-
-func (t trackChange) fixes() []nav.Fix {
-	fixes, err := decodeFixes(t.Block)
-	if err != nil {
-		return nil // the frame checked, so this cannot be; a track is not worth a start
-	}
-	return fixes
-}
-
-// AppendTrack keeps fixes of a device, in order of time. It is durable with
-// the next commit of anything, or at the latest with the next of its own.
-func (s *Store) AppendTrack(device incident.DeviceID, fixes []nav.Fix) error {
-	if len(fixes) == 0 {
-		return nil
-	}
-	s.mu.Lock()
-	defer s.mu.Unlock()
-	payload, err := json.Marshal(trackChange{Device: device, Block: encodeFixes(fixes)})
-	if err != nil {
-		return fmt.Errorf("write the track of %s: %w", device, err)
-	}
-	return s.commit(frame{kind: frameTrack, payload: payload}, func(tx *bbolt.Tx) error { return putTrack(tx, device, fixes) })
-}
-
 // Track returns the fixes of a device from one moment to another, both
-// included, in order of time. A block that does not check is left out and
-// the error says so.
+// included, in order of time. Stretches that do not check are left out and
+// the error says so, with the fixes that are good.
 func (s *Store) Track(device incident.DeviceID, from, to time.Time) ([]nav.Fix, error) {
 	var fixes []nav.Fix
-	var damaged error
-	err := s.view(func(tx *bbolt.Tx) error {
-		c := tx.Bucket(bucketTracks).Cursor()
-		prefix := []byte(string(device) + "\x00")
-		k, v := c.Seek(trackKey(device, from))
-		if k == nil || !bytes.HasPrefix(k, prefix) || bytes.Compare(k, trackKey(device, from)) > 0 {
-			// The block before may reach into the time asked for.
-			if k == nil {
-				k, v = c.Last()
-			} else {
-				k, v = c.Prev()
-			}
-			if k == nil || !bytes.HasPrefix(k, prefix) {
-				k, v = c.Seek(prefix)
-			}
-		}
-		for ; k != nil && bytes.HasPrefix(k, prefix) && bytes.Compare(k, trackKey(device, to)) <= 0; k, v = c.Next() {
-			block, err := decodeFixes(v)
-			if err != nil {
-				damaged = err
-				continue
-			}
-			for _, f := range block {
-				if !f.At.Before(from) && !f.At.After(to) {
-					fixes = append(fixes, f)
-				}
-			}
-		}
+	damaged := 0
+	err := s.tracks.view(func(b *bbolt.Bucket) error {
+		fixes, damaged = readTrack(b, string(device), from, to)
 		return nil
 	})
-	if err != nil {
-		return nil, fmt.Errorf("read the track of %s: %w", device, err)
+	if err == nil && damaged > 0 {
+		err = fmt.Errorf("%w: %d of them are left out", errTrack, damaged)
 	}
-	return nav.NewTrack(fixes).Fixes(), damaged
+	if err != nil {
+		err = fmt.Errorf("read the track of %s: %w", device, err)
+	}
+	return nav.NewTrack(fixes).Fixes(), err
 }
 
 // TrackDevices are the devices that have a track.
 func (s *Store) TrackDevices() ([]incident.DeviceID, error) {
 	var out []incident.DeviceID
-	err := s.view(func(tx *bbolt.Tx) error {
-		c := tx.Bucket(bucketTracks).Cursor()
+	err := s.tracks.view(func(b *bbolt.Bucket) error {
+		c := b.Cursor()
 		for k, _ := c.First(); k != nil; {
 			device, _ := splitKey(k)
 			out = append(out, incident.DeviceID(device))
@@ -240,4 +147,90 @@ func (s *Store) TrackDevices() ([]incident.DeviceID, error) {
 		return nil
 	})
 	return out, err
+}
+
+func (t *tracks) view(fn func(*bbolt.Bucket) error) error {
+	db, err := t.current()
+	if err != nil {
+		return err
+	}
+	return guarded(func() error {
+		return db.View(func(tx *bbolt.Tx) error { return fn(tx.Bucket(bucketTracks)) })
+	})
+}
+
+// close flushes the journal and closes both files.
+func (t *tracks) close() error {
+	t.stop()
+	t.back.Wait()
+	t.mu.Lock()
+	defer t.mu.Unlock()
+	t.state.Lock()
+	db, failed := t.db, t.failed
+	t.db = nil
+	t.state.Unlock()
+	var err error
+	if t.out.f != nil {
+		if failed == nil {
+			err = t.out.f.Sync()
+		}
+		err = errors.Join(err, t.out.f.Close())
+	}
+	if failed != nil || db == nil {
+		closeFailed(db)
+		return nil // it was said when it happened
+	}
+	return errors.Join(err, db.Close())
+}
+
+// makeFile makes an empty tracks.db, whole or not at all.
+func (t *tracks) makeFile(path string) error {
+	tmp := path + ".new"
+	if err := removeIf(t.fs, tmp); err != nil {
+		return err
+	}
+	db, err := bbolt.Open(tmp, 0o600, boltOptions(false, 0))
+	if err != nil {
+		return err
+	}
+	err = db.Update(func(tx *bbolt.Tx) error {
+		_, err := tx.CreateBucketIfNotExists(bucketTracks)
+		return err
+	})
+	if err = errors.Join(err, db.Close()); err != nil {
+		return err
+	}
+	return move(t.fs, tmp, path)
+}
+
+// openJournal opens the journal of tracks, and makes it when there is none.
+func (t *tracks) openJournal(o *opening) error {
+	if head, err := readHead(t.journal); err != nil {
+		return err
+	} else if _, _, ok := parseHeader(head); !ok {
+		if err := o.aside(t.journal, "bad"); err != nil {
+			return err
+		}
+		if err := writeFile(t.fs, t.journal, header(newEpoch())); err != nil {
+			return err
+		}
+	}
+	f, err := t.fs.Append(t.journal)
+	t.out = journal{f: f}
+	return err
+}
+
+// readHead reads the first bytes of a file; none when there is no file.
+func readHead(path string) ([]byte, error) {
+	f, err := os.Open(path)
+	if errors.Is(err, os.ErrNotExist) {
+		return nil, nil
+	}
+	if err != nil {
+		return nil, err
+	}
+	defer f.Close()
+	head := make([]byte, headerLen)
+	n, _ := f.Read(head)
+	return head[:n], nil
 }
