@@ -7,6 +7,7 @@ import { stories as alone } from "./stories/alone.mjs";
 import { stories as looks } from "./stories/looks.mjs";
 import { stories as marking } from "./stories/marking.mjs";
 import { stories as real } from "./stories/real.mjs";
+import { stories as searching } from "./stories/searching.mjs";
 import { stories as together } from "./stories/together.mjs";
 import { Stage } from "./stage.mjs";
 
@@ -24,7 +25,7 @@ if (!existsSync(new URL("../dist/index.html", import.meta.url))) {
 mkdirSync(new URL("../test-results", import.meta.url), { recursive: true });
 
 const wanted = process.argv[2] ?? "";
-const all = { ...marking, ...together, ...alone, ...looks, ...real };
+const all = { ...marking, ...together, ...alone, ...looks, ...real, ...searching };
 const names = Object.keys(all).filter((n) => n.includes(wanted));
 let failed = 0;
 const browser = await launch();

@@ -96,7 +96,7 @@ async function look(s, size, palette) {
 }
 
 /** Nothing sticks out sideways; what is touched is large enough; what is read is not too small. */
-function fits(p) {
+export function fits(p) {
   return p.page.evaluate(() => {
     const out = [];
     const wide = document.documentElement.clientWidth;
@@ -138,7 +138,7 @@ function fits(p) {
 }
 
 /** WCAG 2.2 A and AA, as far as axe can see. */
-async function accessible(p) {
+export async function accessible(p) {
   // The policy of the page allows no script but its own files; the debugger's evaluate is not the page's.
   await p.page.evaluate(axe);
   return p.page.evaluate(() =>

@@ -5,7 +5,7 @@ import { built, Program } from "../program.mjs";
 import { assert, until } from "../stage.mjs";
 
 /** A story with a program of its own. */
-function withProgram(story) {
+export function withProgram(story) {
   return async (s) => {
     if (!built) return "skipped";
     const program = new Program();

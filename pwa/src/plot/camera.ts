@@ -70,7 +70,7 @@ export function zoom(c: Camera, size: Size, by: number, about: XY = { x: size.w 
 const STEP = Math.SQRT2;
 
 /** Everything of interest in sight, with a margin in pixels. */
-export function fit(points: XY[], upDeg: number, size: Size, marginPx = 36): Camera {
+export function fitted(points: XY[], upDeg: number, size: Size, marginPx = 36): Camera {
   const rad = (upDeg * Math.PI) / 180;
   const turned = points.map(({ x, y }) => ({ x: x * Math.cos(rad) - y * Math.sin(rad), y: x * Math.sin(rad) + y * Math.cos(rad) }));
   const [x0, x1, y0, y1] = [least(turned, "x"), most(turned, "x"), least(turned, "y"), most(turned, "y")];

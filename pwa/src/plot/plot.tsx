@@ -4,7 +4,7 @@
 import { useEffect, useMemo, useRef, useState } from "preact/hooks";
 import { Cross } from "../parts/ring";
 import { t } from "../text/text";
-import { type Camera, drag, fit, type Size, zoom } from "./camera";
+import { type Camera, drag, fitted, type Size, zoom } from "./camera";
 import { Layers } from "./layers";
 import { Plane, type XY } from "./plane";
 import { anchor, ofInterest, type PlotView, plotText, upOf } from "./plot_view";
@@ -28,12 +28,14 @@ export function Plot({ view }: { view: PlotView }) {
   const plane = usePlane(anchor(view));
   const [hand, setHand] = useState<Camera | null>(null);
   const up = upOf(view);
-  const camera = useMemo(() => (plane ? (hand ?? settle(fit(ofInterest(view, plane), up.deg, size))) : null), [plane, hand, view, up.deg, size]);
+  const camera = useMemo(() => (plane ? (hand ?? settle(fitted(ofInterest(view, plane), up.deg, size))) : null), [plane, hand, view, up.deg, size]);
   const current = useRef(camera);
   current.current = camera;
   useGestures(box, size, current, setHand);
   const by = (factor: number) => () => camera && setHand(zoom(camera, size, factor));
   return (
+    // biome-ignore lint/a11y/noNoninteractiveTabindex: the plot is moved by keys, so it takes the focus.
+    // biome-ignore lint/a11y/useSemanticElements: a fieldset is for a form; this is a picture with its touches.
     <div class="plot" ref={box} tabIndex={0} role="group" aria-label={t("plot.title")} onKeyDown={(e) => keys(e, camera, size, setHand)}>
       <svg class="plot-picture" viewBox={`0 0 ${size.w} ${size.h}`} width={size.w} height={size.h} role="img" aria-label={plotText(view)}>
         {plane && camera && <Layers view={view} plane={plane} camera={camera} size={size} />}

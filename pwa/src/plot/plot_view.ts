@@ -1,11 +1,20 @@
 // What the plot shows, and the same in words for whoever cannot see it.
 
-import type { Cloud } from "../engine/search_calls";
-import type { LegStyle } from "../state/search_view";
 import { t } from "../text/text";
 import * as f from "../units/format";
 import type { Position } from "../wire/event";
 import { Plane, type XY } from "./plane";
+
+/** How a leg is drawn, one style and one word each. */
+export type LegStyle = "done" | "now" | "todo" | "left_out";
+
+/** Where the person may be. */
+export interface PlotCloud {
+  r50_m: number;
+  r95_m: number;
+  regions: { share: number; rings: Position[][] | null }[] | null;
+  points: Position[] | null;
+}
 
 export type PlotUp = "north_up" | "course_up" | "head_up";
 
@@ -22,7 +31,7 @@ export interface PlotView {
   track: readonly Position[];
   mark: Position | null;
   datum: { at: Position; errorM: number } | null;
-  cloud: Cloud | null;
+  cloud: PlotCloud | null;
   legs: PlotLeg[];
   /** Water that was looked at: pieces of track and how wide was looked. */
   runs: [Position, Position][];

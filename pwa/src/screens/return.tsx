@@ -11,7 +11,9 @@ import { nextPerson, type Selection } from "../state/select";
 import { commonNow } from "../sync/clock";
 import { isKey, type Key, t } from "../text/text";
 import { rangeText, utcTime } from "../units/format";
+import type { Frame } from "../wire/frame";
 import { Sign, Waiting } from "./ready";
+import { SearchTouch } from "./search_door";
 import { Sheets } from "./sheets";
 import { useSenses } from "./senses";
 
@@ -36,6 +38,9 @@ export function Return({ selection }: { selection: Selection }) {
           words={{ north: t("return.north"), wind: t("return.wind"), drift: t("return.drift") }}
         />
         <p class="picture-up">{view.ring.up}</p>
+        {selection.person?.status !== "aboard" && (
+          <SearchTouch selection={selection} loud={looksFor(selection, shown.held?.frame ?? null)} />
+        )}
         {view.ring.disc && (
           <p class="picture-scale">{t("return.ring_scale", { range: rangeText(view.ring.radiusM) })}</p>
         )}
@@ -45,6 +50,12 @@ export function Return({ selection }: { selection: Selection }) {
       <Sheets selection={selection} />
     </main>
   );
+}
+
+/** Looking is the thing to do: near enough to see all round, or seen and lost again. */
+function looksFor({ person, state }: Selection, frame: Frame | null): boolean {
+  const lost = (state.sightings ?? []).some((s) => s.lost && (s.person ?? 1) === person?.no);
+  return frame?.do.code === "look_all_round" || (lost && !person?.in_sight);
 }
 
 /** A compass that fell silent is not believed for longer: our choice, as for the vessel's. */

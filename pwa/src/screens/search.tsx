@@ -147,7 +147,7 @@ function Running({ selection, frame, laid, leg, back }: { selection: Selection; 
         {leg?.steer && !paused && (
           <p class="leg-steer">{t("search.steer")} <b>{leg.steer.figure}</b> <small>{leg.steer.unit}</small></p>
         )}
-        {leg && !paused && <p class="leg-then">{leg.then}</p>}
+        {leg && !paused && <p class="leg-then">{leg.next}</p>}
         {paused && <p class="order">{t("search.paused_words", { leg: laid.leg })}</p>}
         {leg?.note && <p class="caution"><Sign level="warn" /> {leg.note}</p>}
         <SearchedLine />
@@ -211,7 +211,7 @@ function useTurn(leg: LegView | null): void {
   useEffect(() => {
     if (turn && before.current !== turn) {
       play("turn");
-      if (m.speech.value && leg) say(`${leg.turn}. ${leg.then}`);
+      if (m.speech.value && leg) say(`${leg.turn}. ${leg.next}`);
     }
     if (turn) before.current = turn;
   }, [turn]);

@@ -10,11 +10,12 @@ import { running } from "../state/search_view";
 import type { Selection } from "../state/select";
 import { keepTrack } from "../state/track";
 import { t } from "../text/text";
+import "./search_door.css";
 
 /** The incident whose search is on the screen, "" for the ring. */
 export const searching = signal("");
 
-type Screens = typeof import("../plot/plot_screens");
+type Screens = typeof import("./plot_screens");
 
 const screens = signal<Screens | null>(null);
 const trouble = signal("");
@@ -23,7 +24,7 @@ let loading: Promise<void> | null = null;
 /** Loads the screen; a failure is tried again at the next wish. */
 function load(): void {
   if (screens.value || loading) return;
-  loading = import("../plot/plot_screens")
+  loading = import("./plot_screens")
     .then((s) => {
       screens.value = s;
       trouble.value = "";

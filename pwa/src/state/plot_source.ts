@@ -6,6 +6,7 @@ import type { Position } from "../wire/event";
 import type { Frame } from "../wire/frame";
 import type { LegLaid, SearchLaid } from "../wire/search";
 import type { Cloud, Searched } from "../engine/search_calls";
+import { utcMinute } from "../units/format";
 import { legPieces, type LegPiece, rideM, running } from "./search_view";
 import type { Selection } from "./select";
 
@@ -45,7 +46,10 @@ export function plotView(s: PlotSources): PlotView {
     legs: plan ? placed(plan, pieces, s.nowMs) : [],
     runs: s.searched?.runs ?? [],
     widthM: width * 1852,
-    sightings: [],
+    sightings: (selection.state.sightings ?? []).flatMap((x) =>
+      x.observer && x.bearing_deg != null
+        ? [{ at: x.observer, bearingDeg: x.bearing_deg, rangeM: x.range_m ?? null, word: `${x.what ?? ""} ${utcMinute(Date.parse(x.at))}`.trim() }]
+        : []),
     others: [],
     up: s.up,
     courseDeg: frame?.leg?.course_deg ?? (search ? null : plan?.legs[0]?.course_deg) ?? fix?.cog_deg ?? null,

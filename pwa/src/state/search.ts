@@ -160,7 +160,7 @@ async function next(s: Selection, r: Search, leg: LegSeen | null, how: How): Pro
 }
 
 /** The next leg by hand: this one was run to its end, or is left out. */
-export function advance(s: Selection, leg: LegSeen | null, how: "run" | "skipped"): Promise<void | null> {
+export function advance(s: Selection, leg: LegSeen | null, how: "run" | "skipped"): Promise<unknown> {
   return once(async () => {
     const r = running(s.state);
     if (r) await next(s, r, leg, how);
@@ -168,7 +168,7 @@ export function advance(s: Selection, leg: LegSeen | null, how: "run" | "skipped
 }
 
 /** Breaks the leg off where it is: what is run while paused is not search. */
-export function pause(s: Selection, leg: LegSeen | null, reason = ""): Promise<void | null> {
+export function pause(s: Selection, leg: LegSeen | null, reason = ""): Promise<unknown> {
   return once(async () => {
     const r = running(s.state);
     if (r?.status !== "running") return;
@@ -177,7 +177,7 @@ export function pause(s: Selection, leg: LegSeen | null, reason = ""): Promise<v
   });
 }
 
-export function resume(s: Selection): Promise<void | null> {
+export function resume(s: Selection): Promise<unknown> {
   return once(async () => {
     const r = running(s.state);
     if (!r) return;
@@ -192,7 +192,7 @@ export async function seen(s: Selection, leg: LegSeen | null): Promise<void> {
   await pause(s, leg, "seen");
 }
 
-export function drop(s: Selection, leg: LegSeen | null): Promise<void | null> {
+export function drop(s: Selection, leg: LegSeen | null): Promise<unknown> {
   return once(async () => {
     const r = running(s.state);
     if (!r) return;

@@ -2,6 +2,7 @@
 // engine say. They round and word; they compute nothing that is steered by.
 
 import type { Proposal } from "../engine/search_calls";
+import type { LegStyle } from "../plot/plot_view";
 import { t } from "../text/text";
 import * as f from "../units/format";
 import type { State } from "../wire/frame";
@@ -27,7 +28,7 @@ export interface LegView {
   /** "066 M", or "068 T" where magnetic is not known. */
   steer: { figure: string; unit: string } | null;
   /** "then starboard 120, steer 186 M". */
-  then: string;
+  next: string;
   note: string;
   /** The order is to turn. */
   turnNow: boolean;
@@ -45,7 +46,7 @@ export function legView(leg: LegSeen, lengthM: number, variationDeg: number | nu
     cross: crossWords(leg.cross_m),
     turn: turnWords(leg, lengthM),
     steer: steerOf(leg),
-    then: thenWords(leg, variationDeg),
+    next: nextWords(leg, variationDeg),
     note: leg.note ?? "",
     turnNow: isTurn(leg),
   };
@@ -86,7 +87,7 @@ function steerOf(leg: LegSeen): { figure: string; unit: string } | null {
   return leg.steer_deg === null ? null : { figure: f.bearing(leg.steer_deg), unit: "T" };
 }
 
-function thenWords(leg: LegSeen, variationDeg: number | null): string {
+function nextWords(leg: LegSeen, variationDeg: number | null): string {
   if (leg.leg === leg.of) return t("search.last");
   if (leg.next_turn_deg === null || leg.next_steer_deg === null) return "";
   const deg = Math.round(Math.abs(leg.next_turn_deg));
@@ -103,9 +104,6 @@ export function partRun(leg: LegSeen, laid: LegLaid, speedKn: number, begunS: nu
 }
 
 const M_PER_S = 1852 / 3600; // one knot
-
-/** How a leg is drawn, one style and one word each. */
-export type LegStyle = "done" | "now" | "todo" | "left_out";
 
 export interface LegPiece {
   leg: number;

@@ -93,6 +93,19 @@ export interface WaterSaid extends Observed {
   temp_c: number;
 }
 
+/** A thing seen, or lost from sight. */
+export interface Sighting {
+  event: string;
+  at: string;
+  by?: string;
+  lost?: boolean;
+  person?: number;
+  what?: string;
+  observer?: Position | null;
+  bearing_deg?: number | null;
+  range_m?: number | null;
+}
+
 /** What an incident's state says of searches and of what is assumed. */
 export interface SearchState {
   searches?: Search[];
@@ -100,6 +113,7 @@ export interface SearchState {
   winds?: WindSaid[];
   currents?: CurrentSaid[];
   waters?: WaterSaid[];
+  sightings?: Sighting[];
 }
 
 /** The leg being steered, in a steer frame. */

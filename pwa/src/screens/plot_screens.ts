@@ -1,6 +1,6 @@
 // What is loaded when a search is first wanted.
 
-import "./plot.css";
+import "../plot/plot.css";
 
-export { Search } from "../screens/search";
+export { Search } from "./search";
 export { follow } from "../state/search";
