@@ -7,6 +7,7 @@ import (
 	"io/fs"
 	"log/slog"
 	"net"
+	"slices"
 	"time"
 )
 
@@ -88,6 +89,29 @@ func (c Config) check() error {
 		return fmt.Errorf("%w: no data folder, expected one that can be written to", ErrConfig)
 	}
 	return nil
+}
+
+// names are the host names under which the server may be asked for: those
+// given, those of its certificate, and the one it listens on. Addresses of
+// this machine are known by the connections that come in on them.
+func (c Config) names() []string {
+	names := slices.Clone(c.Names)
+	if c.TLS != nil {
+		for _, cert := range c.TLS.Certificates {
+			if leaf := cert.Leaf; leaf != nil {
+				names = append(names, leaf.DNSNames...)
+				for _, ip := range leaf.IPAddresses {
+					names = append(names, ip.String())
+				}
+			}
+		}
+	}
+	if host, _, err := net.SplitHostPort(c.Listen); err == nil && host != "" {
+		if ip := net.ParseIP(host); ip == nil || !ip.IsUnspecified() {
+			names = append(names, host)
+		}
+	}
+	return names
 }
 
 // isLoopback reports whether a host is this machine alone. A name other than

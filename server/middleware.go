@@ -6,12 +6,15 @@ import (
 	"fmt"
 	"log"
 	"log/slog"
+	"net"
 	"net/http"
 	"runtime/debug"
 	"strings"
 	"time"
 
 	"github.com/labstack/echo/v4"
+
+	"wakeback/server/gate"
 )
 
 // recovered turns a panic in one request into a fault of that request.
@@ -52,7 +55,9 @@ func (s *Server) logged(next echo.HandlerFunc) echo.HandlerFunc {
 // known refuses a host name that is not the server's (DNS rebinding).
 func (s *Server) known(next echo.HandlerFunc) echo.HandlerFunc {
 	return func(c echo.Context) error {
-		if !s.hosts.Allowed(c.Request().Host) {
+		r := c.Request()
+		local, _ := r.Context().Value(http.LocalAddrContextKey).(net.Addr)
+		if !s.hosts.Allowed(r.Host) && !gate.IsAddress(r.Host, local) {
 			return pMisdirected.problem("Use the address that the server printed when it started.")
 		}
 		return next(c)
@@ -70,7 +75,7 @@ func (s *Server) sameSite(next echo.HandlerFunc) echo.HandlerFunc {
 			return pForbidden.because(err, "The request comes from a page of another site.")
 		}
 		origin := r.Header.Get("Origin")
-		if origin != "" && !s.hosts.SameOrigin(origin, r.Host) {
+		if origin != "" && !gate.SameOrigin(origin, r.Host) {
 			return pForbidden.problem("The request comes from a page of another site.")
 		}
 		if origin == "" && isUpgrade(r) && byCookie(r) {

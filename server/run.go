@@ -136,8 +136,8 @@ func (s *Server) pageURL(a net.Addr) string {
 	scheme, host, port := "http", "localhost", portOf(a)
 	if s.cfg.TLS != nil {
 		scheme = "https"
-		if len(s.cfg.Names) > 0 {
-			host = s.cfg.Names[0]
+		if names := s.cfg.names(); len(names) > 0 {
+			host = names[0]
 		}
 	}
 	return scheme + "://" + net.JoinHostPort(host, port)

@@ -68,7 +68,7 @@ func newServer(cfg Config, st Store, inst Instruments, port string) (*Server, er
 	cfg = cfg.withDefaults()
 	s := &Server{
 		cfg: cfg, log: cfg.Log, now: cfg.Now, store: st, book: newBook(),
-		vessel: &vessel{instruments: inst}, hosts: gate.NewHosts(port, cfg.Names...),
+		vessel: &vessel{instruments: inst}, hosts: gate.NewHosts(port, cfg.names()...),
 		streams: context.Background(), changed: make(chan struct{}, 1),
 	}
 	var err error

@@ -3,6 +3,7 @@ package gate
 import (
 	"errors"
 	"maps"
+	"net"
 	"strings"
 	"sync"
 	"testing"
@@ -207,8 +208,20 @@ func TestHosts(t *testing.T) {
 		"http://localhost:8080": true, "https://localhost:8080": true, "http://boat.local:8080": false, "http://localhost": false,
 		"null": false, "": false, "file://localhost:8080": false, "http://evil.example:8080": false, "://": false,
 	} {
-		if got := h.SameOrigin(origin, "localhost:8080"); got != want {
+		if got := SameOrigin(origin, "localhost:8080"); got != want {
 			t.Errorf("SameOrigin(%q) = %t, want %t", origin, got, want)
+		}
+	}
+}
+
+func TestIsAddress(t *testing.T) {
+	local := &net.TCPAddr{IP: net.ParseIP("192.168.1.5"), Port: 8080}
+	for host, want := range map[string]bool{
+		"192.168.1.5:8080": true, "[::ffff:192.168.1.5]:8080": true,
+		"192.168.1.5": false, "192.168.1.5:80": false, "192.168.1.6:8080": false, "boat.local:8080": false, "": false,
+	} {
+		if got := IsAddress(host, local); got != want {
+			t.Errorf("IsAddress(%q) = %t, want %t", host, got, want)
 		}
 	}
 }

@@ -41,14 +41,27 @@ func (h Hosts) Allowed(host string) bool {
 	return slices.Contains(h.names, canonicalHost(name))
 }
 
-// SameOrigin reports whether an Origin header names this server: a host on
-// the list, and the very host that the request was sent to.
-func (h Hosts) SameOrigin(origin, host string) bool {
+// SameOrigin reports whether an Origin header names the very host that the
+// request was sent to, which must have been found to be [Hosts.Allowed].
+func SameOrigin(origin, host string) bool {
 	u, err := url.Parse(origin)
 	if err != nil || u.Host == "" || u.Scheme != "https" && u.Scheme != "http" {
 		return false
 	}
-	return h.Allowed(u.Host) && strings.EqualFold(u.Host, host)
+	return strings.EqualFold(u.Host, host)
+}
+
+// IsAddress reports whether a Host header is an address and port of this
+// machine on which the request came in. No name that points here by deceit
+// can be one.
+func IsAddress(host string, local net.Addr) bool {
+	h, errH := netip.ParseAddrPort(host)
+	tcp, ok := local.(*net.TCPAddr)
+	if errH != nil || !ok {
+		return false
+	}
+	l := tcp.AddrPort()
+	return h.Port() == l.Port() && h.Addr().Unmap().WithZone("") == l.Addr().Unmap().WithZone("")
 }
 
 func canonicalHost(name string) string {
