@@ -240,7 +240,7 @@ func (s *source) count(err error, now time.Time) {
 		s.status.Good++
 	case errors.Is(err, nmea.ErrUnknown):
 		s.status.Unknown++
-	case errors.Is(err, nmea.ErrChecksum):
+	case errors.Is(err, nmea.ErrChecksum), errors.Is(err, nmea.ErrNoChecksum):
 		s.status.Checksum++
 		return
 	default:
