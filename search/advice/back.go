@@ -30,16 +30,13 @@ func PlaceAt(track nav.Track, at time.Time) (incident.Place, error) {
 	if !ok {
 		return incident.Place{}, fmt.Errorf("place at %s: %w", at.UTC().Format(time.RFC3339), ErrNoTrack)
 	}
-	v, ok := near.Velocity().Get()
+	carried := at.Sub(near.At)
+	f, ok := near.Reckon(carried).Get()
 	if !ok {
 		return incident.Place{}, fmt.Errorf("place at %s: %w", at.UTC().Format(time.RFC3339), ErrNoTrack)
 	}
-	carried := at.Sub(near.At)
 	return incident.Place{
-		Position: near.Position.Shift(v.For(carried)),
-		Source:   incident.FromDR,
-		ErrorM:   nav.Some(reckonedErrorM(near, v, carried)),
-		FixAgeS:  nav.Some(math.Abs(carried.Seconds())),
+		Position: f.Position, Source: incident.FromDR, ErrorM: f.ErrorM, FixAgeS: nav.Some(math.Abs(carried.Seconds())),
 	}, nil
 }
 
@@ -54,28 +51,6 @@ func nearest(track nav.Track, at time.Time) (nav.Fix, bool) {
 		return after, true
 	}
 	return nav.Fix{}, false
-}
-
-// Errors of reckoning by course and speed, one standard deviation: the upper
-// ends of the typical 2 to 5 degrees and 3 to 10 per cent (table of a page
-// that cites Bowditch's propagation of errors, seen there; not a manual).
-const (
-	courseSdDeg = 5
-	speedSdPart = 0.10
-)
-
-// to95 turns a circular standard deviation into the radius of 95 in 100
-// (sqrt(-2 ln 0.05), from the Rayleigh law).
-const to95 = 2.44775
-
-// reckonedErrorM is the 95 in 100 radius after carrying a fix on: sigma² =
-// (D sin sigma_c)² + (D sigma_s)², with the fix's own error added.
-func reckonedErrorM(fix nav.Fix, v nav.Velocity, carried time.Duration) float64 {
-	run := v.SpeedMs() * math.Abs(carried.Seconds())
-	across := run * math.Sin(courseSdDeg*math.Pi/180)
-	along := run * speedSdPart
-	// The larger of the two for both axes: a circle that is not too small.
-	return math.Hypot(to95*math.Max(across, along), fix.ErrorM.Or(0))
 }
 
 // Back moves a mark back in time along the track: where the vessel was when

@@ -24,7 +24,7 @@ func (f *folder) marked(e *entry, b *Marked) {
 	} else if place, ok := f.placed[e.ID]; ok {
 		m.Press = nav.Some(place)
 	}
-	m.Place = m.Press
+	m.Place = m.carriedOn()
 	f.s.Marks = append(f.s.Marks, m)
 	f.signs = append(f.signs, sign{at: e.At, device: e.Device, mark: e.ID})
 	p := f.personOf(no, e)
@@ -81,8 +81,28 @@ func (f *folder) markPlaced(b *MarkPlaced) {
 	m := &f.s.Marks[i]
 	m.Press = nav.Some(place)
 	if !m.Place.IsSet() {
-		m.Place = m.Press
+		m.Place = m.carriedOn()
 	}
+}
+
+// oldFix is the age from which a fix is no longer taken for the place of the
+// press; our choice: instruments report once a second, so five are missing.
+const oldFix = 5.0
+
+// carriedOn is where the press was: the position that came with it, or, when
+// that was old, carried on by its course and speed with the error that grows.
+func (m *Mark) carriedOn() nav.Opt[Place] {
+	press, ok := m.Press.Get()
+	age := press.FixAgeS.Or(0)
+	if !ok || age <= oldFix || press.Source != FromPhone && press.Source != FromVessel {
+		return m.Press
+	}
+	old := nav.Fix{Position: press.Position, SogKn: m.SogKn, CogTrue: m.CogDeg, ErrorM: press.ErrorM}
+	now, ok := old.Reckon(time.Duration(age * float64(time.Second))).Get()
+	if !ok {
+		return m.Press
+	}
+	return nav.Some(Place{Position: now.Position, Source: FromDR, ErrorM: now.ErrorM, FixAgeS: press.FixAgeS})
 }
 
 // markAdjusted corrects a mark; of several the last counts, field by field.

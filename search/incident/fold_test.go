@@ -1,6 +1,7 @@
 package incident
 
 import (
+	"math"
 	"math/rand/v2"
 	"testing"
 
@@ -35,6 +36,27 @@ func TestScenario05TwoMarks(t *testing.T) {
 	}
 	if len(st.Asked) != 0 {
 		t.Errorf("the granted wish is still there: %s", toJSON(t, st.Asked))
+	}
+}
+
+// The last fix was 95 s old at 6.5 kn: the press is kept with it, and the place
+// is 318 m further on, with an error that grows.
+func TestScenario08NoFixAtThePress(t *testing.T) {
+	s := newStory(t)
+	m := markedAt(54, 7)
+	m.FixAgeS, m.SogKn, m.CogDeg = nav.Some(95.0), nav.Some(6.5), nav.Some(nav.TrueDeg(30))
+	s.say("a", 0, KindMarked, m)
+	got := s.state().Marks[0]
+	press, place := got.Press.Or(Place{}), got.Place.Or(Place{})
+	line := nav.Inverse(press.Position, place.Position)
+	if math.Abs(line.RangeM-318) > 3 || math.Abs(line.Bearing.Or(0).Minus(30)) > 0.1 || place.Source != FromDR {
+		t.Errorf("carried on %v m towards %v, source %s", line.RangeM, line.Bearing, place.Source)
+	}
+	if e := place.ErrorM.Or(0); e < 60 || e > 120 {
+		t.Errorf("error = %v m", e)
+	}
+	if press.FixAgeS.Or(0) != 95 {
+		t.Errorf("the press lost the age of its fix")
 	}
 }
 
