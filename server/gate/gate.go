@@ -235,7 +235,9 @@ func (g *Gate) Revoke(id incident.DeviceID) error {
 // MayWriteAs checks that a paired device writes events under its own device
 // id, and binds the id at the first event. A device that was paired anew and
 // is not bound yet takes the id over from its older pairing: the code it was
-// paired with stands for that.
+// paired with stands for that. One that is bound and comes with an id that
+// nobody writes as has lost its storage and begun anew: it is bound to the new
+// id, because a mark must never be refused for that.
 func (g *Gate) MayWriteAs(who incident.DeviceID, as incident.DeviceID) error {
 	g.mu.RLock()
 	bound := g.devices[who].Writes
@@ -246,14 +248,14 @@ func (g *Gate) MayWriteAs(who incident.DeviceID, as incident.DeviceID) error {
 	g.mu.Lock()
 	defer g.mu.Unlock()
 	r, ok := g.devices[who]
-	switch {
-	case !ok:
+	if !ok {
 		return ErrUnpaired
-	case r.Writes != "" && r.Writes != as:
-		return fmt.Errorf("%w: expected %s", ErrForeign, r.Writes)
 	}
 	for _, other := range g.devices {
 		if other.Writes == as && other.ID != who {
+			if r.Writes != "" {
+				return fmt.Errorf("%w: expected %s", ErrForeign, r.Writes)
+			}
 			other.Writes = ""
 			if other.PairedAt.After(r.PairedAt) {
 				return ErrForeign

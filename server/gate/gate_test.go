@@ -158,8 +158,15 @@ func TestPairedAnewTakesOver(t *testing.T) {
 	if err := g.MayWriteAs(old.ID, "phone"); !errors.Is(err, ErrForeign) {
 		t.Errorf("the older pairing: %v, want ErrForeign", err)
 	}
-	if err := g.MayWriteAs(anew.ID, "other"); !errors.Is(err, ErrForeign) {
-		t.Errorf("another id: %v, want ErrForeign", err)
+	third, _ := pair(t, g, Crew, "third")
+	if err := g.MayWriteAs(third.ID, "tablet"); err != nil {
+		t.Fatal(err)
+	}
+	if err := g.MayWriteAs(anew.ID, "tablet"); !errors.Is(err, ErrForeign) {
+		t.Errorf("another's id: %v, want ErrForeign", err)
+	}
+	if err := g.MayWriteAs(anew.ID, "begun anew"); err != nil {
+		t.Errorf("a phone that lost its storage: %v", err)
 	}
 	if err := g.MayWriteAs("nobody", "phone"); !errors.Is(err, ErrUnpaired) {
 		t.Errorf("nobody: %v, want ErrUnpaired", err)
