@@ -71,6 +71,7 @@ func (s *Server) serve(ctx context.Context, ln net.Listener, warnings []string) 
 	run(s.hub.Run)
 	run(s.runLive)
 	run(s.runKeeper)
+	run(s.runWitness)
 	run(s.guard.run)
 	if r, ok := s.vessel.instruments.(interface{ Run(context.Context) error }); ok {
 		run(func(ctx context.Context) {
