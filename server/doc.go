@@ -8,7 +8,10 @@
 //   - ledger: the one writer. What it has acknowledged is on disk, counted in
 //     the book, and published, in that order.
 //   - book: the incidents in memory, folded when they are asked for.
-//   - live: the loop that says where the vessel is and how to steer.
+//   - live: the loop that says where the vessel is and how to steer; it never
+//     waits for the disk.
+//   - keeper: writes the tracks, and tells everyone how the store is.
+//   - witness: writes into the log what the instruments say of wind and water.
 //   - watchman: raises marks for beacons that call by themselves.
 //
 // # What it promises
