@@ -34,8 +34,9 @@ export function Layers({ view, plane, camera, size }: Props) {
           <text x="9" dy="0.35em">{o.word}</text>
         </g>
       ))}
-      {view.mark && <Cross {...on(view.mark)} />}
       {view.datum && <circle class="disc" {...at(on(view.datum.at))} r="8" />}
+      {view.mark && <Cross {...on(view.mark)} />}
+      <RingWords view={view} on={on} camera={camera} size={size} />
       <Own view={view} on={on} px={px} camera={camera} size={size} />
       <Scale camera={camera} size={size} />
       <North camera={camera} size={size} />
@@ -93,24 +94,37 @@ function Head({ from, to }: { from: XY; to: XY }) {
   return <path class="leg-head" d="M0 0 L-12 -7 V7 Z" transform={`${shift(to)} rotate(${n1(deg)})`} />;
 }
 
-/** Rings about the own vessel: two in sight, of a distance that is said. */
-function Rings({ view, on, camera, size }: { view: PlotView; on: (p: Position) => XY; camera: Camera; size: Size }) {
+interface RingProps {
+  view: PlotView;
+  on: (p: Position) => XY;
+  camera: Camera;
+  size: Size;
+}
+
+/** Two rings about the own vessel, of a distance that is said. */
+function ringsOf({ view, on, camera, size }: RingProps): { c: XY; radii: { r: number; m: number }[] } | null {
   const middle = view.own?.at ?? view.datum?.at;
   if (!middle) return null;
   const each = nice((Math.min(size.w, size.h) / 2.2) * camera.mPerPx);
-  const c = on(middle);
+  return { c: on(middle), radii: [1, 2].map((k) => ({ r: (each * k) / camera.mPerPx, m: each * k })) };
+}
+
+function Rings(props: RingProps) {
+  const rings = ringsOf(props);
+  return rings && <g class="range-rings">{rings.radii.map(({ r, m }) => <circle key={m} {...at(rings.c)} r={n1(r)} />)}</g>;
+}
+
+/** Their words lie over the legs, aslant of the vessel. */
+function RingWords(props: RingProps) {
+  const rings = ringsOf(props);
   return (
-    <g class="range-rings">
-      {[1, 2].map((k) => {
-        const r = (each * k) / camera.mPerPx;
-        return (
-          <g key={k}>
-            <circle {...at(c)} r={n1(r)} />
-            <text x={n1(c.x)} y={n1(c.y + r)} dy="-4">{niceText(each * k)}</text>
-          </g>
-        );
-      })}
-    </g>
+    rings && (
+      <g class="range-rings">
+        {rings.radii.map(({ r, m }) => (
+          <text key={m} x={n1(rings.c.x + r * Math.SQRT1_2)} y={n1(rings.c.y + r * Math.SQRT1_2)} dy="0.35em">{niceText(m)}</text>
+        ))}
+      </g>
+    )
   );
 }
 
@@ -188,10 +202,10 @@ function Graticule({ plane, camera, size }: { plane: Plane; camera: Camera; size
   return (
     <g class="graticule">
       {parallels.map((l) => (
-        <g key={`p${l}`}><path d={line([on(l, w), on(l, e)])} /><Name at={edge(on(l, w), on(l, e), size)} text={name(l, "N", "S", step)} /></g>
+        <g key={`p${l}`}><path d={line([on(l, w), on(l, e)])} /><Name at={edge(on(l, w), on(l, e), size)} text={name(l, 2, "N", "S", step)} /></g>
       ))}
       {meridians.map((l) => (
-        <g key={`m${l}`}><path d={line([on(s, l), on(n, l)])} /><Name at={edge(on(s, l), on(n, l), size)} text={name(wrap(l), "E", "W", step)} /></g>
+        <g key={`m${l}`}><path d={line([on(s, l), on(n, l)])} /><Name at={edge(on(s, l), on(n, l), size)} text={name(wrap(l), 3, "E", "W", step)} /></g>
       ))}
     </g>
   );
@@ -219,9 +233,10 @@ function edge(a: XY, b: XY, size: Size): XY | null {
 }
 
 /** 54°06.05'N, with as many decimals as the step needs. */
-function name(min: number, plus: string, minus: string, step: number): string {
+function name(min: number, digits: number, plus: string, minus: string, step: number): string {
   const abs = Math.round(Math.abs(min) * 100) / 100;
   const d = Math.floor(abs / 60);
-  const rest = (abs - d * 60).toFixed(step < 0.1 ? 2 : step < 1 ? 1 : 0);
-  return `${d}°${rest}'${min < 0 ? minus : plus}`;
+  const decimals = step < 0.1 ? 2 : step < 1 ? 1 : 0;
+  const rest = (abs - d * 60).toFixed(decimals).padStart(decimals ? 3 + decimals : 2, "0");
+  return `${String(d).padStart(digits, "0")}°${rest}'${min < 0 ? minus : plus}`;
 }

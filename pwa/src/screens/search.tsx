@@ -2,11 +2,9 @@
 // would be searched and why.
 
 import { signal } from "@preact/signals";
-import { useEffect, useRef } from "preact/hooks";
+import { useEffect } from "preact/hooks";
 import { Plot } from "../plot/plot";
 import type { PlotUp } from "../plot/plot_view";
-import { play } from "../sense/sound";
-import { say } from "../sense/voice";
 import { linkNow } from "../state/control";
 import { pickFrame } from "../state/frames";
 import * as m from "../state/model";
@@ -42,7 +40,6 @@ export function Search({ selection, close }: Props) {
   const laid = running(selection.state);
   const leg = laid ? legOf(frame, laid) : null;
   useEffect(() => search.refresh(selection, frame), [now]);
-  useTurn(leg);
   const proposal = search.proposals.value[search.shown.value] ?? null;
   const view = plotView({
     selection, frame, proposal: proposal?.body ?? null, cloud: search.cloud.value, searched: search.searched.value,
@@ -88,7 +85,7 @@ function Top({ selection, frame, leg }: { selection: Selection; frame: Frame | n
     <header class="top">
       <h1 class="elapsed search-title">{leg ? leg.leg : t("search.title")}</h1>
       <div class="chips">
-        <p>{elapsed((commonNow() - fell) / 1000)} {t("return.since")}</p>
+        <p>{elapsed((commonNow() - fell) / 1000)} {t("search.since")}</p>
         <p class={`chip ${stale ? "warn" : link.level}`}>
           <Sign level={stale ? "warn" : link.level} /> {stale ? t(frame?.fix ? "search.fix_old" : "fix.none") : link.text}
         </p>
@@ -114,7 +111,7 @@ function Before({ selection, back }: { selection: Selection; back: () => void })
             <p class="search-line">{view.size}</p>
             <p class="search-line">{view.coverage} {view.pod}</p>
             <p class="search-soft">{t("search.reason", { reason: view.reason })}</p>
-            <p class="search-soft">{[view.width, ...view.notes].filter(Boolean).join(". ")}</p>
+            <p class="search-soft search-notes">{[view.width, ...view.notes].filter(Boolean).join(". ")}</p>
           </>
         ) : (
           <p class="order" role="status">{search.trouble.value ? t("search.none", { why: search.trouble.value }) : t("search.laying")}</p>
@@ -139,11 +136,9 @@ function Running({ selection, frame, laid, leg, back }: { selection: Selection; 
   const paused = laid.status === "paused";
   return (
     <>
-      <section class="words search-words">
-        <div class="leg-figures">
-          <p class="leg-cross">{leg ? leg.cross : t("return.waiting")}</p>
-          <p class={leg?.turnNow ? "leg-turn now" : "leg-turn"}>{leg?.turn}</p>
-        </div>
+      <section class="words search-words steady">
+        <p class="leg-cross">{leg ? leg.cross : t("return.waiting")}</p>
+        <p class={leg?.turnNow ? "leg-turn now" : "leg-turn"}>{leg?.turn}</p>
         {leg?.steer && !paused && (
           <p class="leg-steer">{t("search.steer")} <b>{leg.steer.figure}</b> <small>{leg.steer.unit}</small></p>
         )}
@@ -203,22 +198,3 @@ function spoken(leg: LegView): string {
   if (leg.turnNow || now - said.at >= 10_000) said = { at: now, text };
   return said.text;
 }
-
-/** Turn now is heard once for each turn, and said. */
-function useTurn(leg: LegView | null): void {
-  const turn = leg?.turnNow ? leg.leg : "";
-  const before = useRef("");
-  useEffect(() => {
-    if (turn && before.current !== turn) {
-      play("turn");
-      if (m.speech.value && leg) say(`${leg.turn}. ${leg.next}`);
-    }
-    if (turn) before.current = turn;
-  }, [turn]);
-  const order = leg?.steer ? `${leg.leg} ${leg.steer.figure}` : "";
-  const leg0 = leg?.leg ?? "";
-  useEffect(() => {
-    if (order && m.speech.value && leg?.steer) say(`${leg.leg}. ${t("search.steer")} ${[...leg.steer.figure].join(" ")}`);
-  }, [leg0]);
-}
-

@@ -9,7 +9,7 @@ import { Legend } from "../plot/plot";
 import type { PlotUp } from "../plot/plot_view";
 import { conditions, type Stated, typed } from "../state/conditions";
 import * as search from "../state/search";
-import { running } from "../state/search_view";
+import { proposalView, running } from "../state/search_view";
 import type { Selection } from "../state/select";
 import { t } from "../text/text";
 import { speed } from "../units/format";
@@ -59,6 +59,7 @@ export function ConditionsSheet({ selection, frame, close }: SheetProps) {
         <button type="button" onClick={set({ speed_kn: Math.max(1, now.speed_kn - 1) })}>{t("search.slower")}</button>
         <button type="button" onClick={set({ speed_kn: Math.min(40, now.speed_kn + 1) })}>{t("search.faster")}</button>
       </div>
+      <Notes />
       <Value word={t("search.visibility")} value={`${now.visibility_nm} nm`} said={said.visibility_nm !== undefined} />
       <div class="grid four">{VISIBILITY.map((v) => choice("visibility_nm", v, `${v} nm`))}</div>
       <Value word={t("search.sea")} value={`${now.sea_m} m`} said={said.sea_m !== undefined} />
@@ -72,6 +73,14 @@ export function ConditionsSheet({ selection, frame, close }: SheetProps) {
       <div class="grid">{choice("first_into", "into_wind", t("search.into_wind"))}{choice("first_into", "down_drift", t("search.down_drift"))}</div>
     </SearchSheetOf>
   );
+}
+
+/** What the plan rests on, for whom the words of the screen have no room. */
+function Notes() {
+  const p = search.proposals.value[search.shown.value];
+  if (!p) return null;
+  const { size, width, notes } = proposalView(p);
+  return <>{[size, width, ...notes].filter(Boolean).map((x) => <p key={x}>{x}</p>)}</>;
 }
 
 function Lookouts({ n, set }: { n: number | undefined; set: (n: number) => void }) {

@@ -4,7 +4,9 @@ import { signal } from "@preact/signals";
 import { EngineError } from "../engine/engine";
 import type { Cloud, Proposal, Searched } from "../engine/search_calls";
 import { play } from "../sense/sound";
+import { say } from "../sense/voice";
 import { commonNow } from "../sync/clock";
+import { t } from "../text/text";
 import type { LogEvent } from "../wire/event";
 import type { Frame } from "../wire/frame";
 import type { How, LegSeen, Search } from "../wire/search";
@@ -12,7 +14,7 @@ import * as act from "./actions";
 import { conditions, type Stated } from "./conditions";
 import { linkNow, parts } from "./control";
 import * as m from "./model";
-import { isOpen, mayAdvance, partRun, running } from "./search_view";
+import { isOpen, isTurn, legView, mayAdvance, partRun, running } from "./search_view";
 import type { Selection } from "./select";
 
 export const stated = signal<Stated>(read());
@@ -156,7 +158,6 @@ async function next(s: Selection, r: Search, leg: LegSeen | null, how: How): Pro
   await end(s, r, leg, how);
   if (r.leg < r.legs.length) await act.log(s, "leg_begun", { search: r.event, leg: r.leg + 1 }, false);
   else if (how !== "run") await act.log(s, "search_dropped", { search: r.event, reason: how }, false);
-  play("turn");
 }
 
 /** The next leg by hand: this one was run to its end, or is left out. */
@@ -207,10 +208,28 @@ export function drop(s: Selection, leg: LegSeen | null): Promise<unknown> {
 const SETTLE_MS = 2_000;
 let done = { leg: "", ms: 0 };
 
+let called = "";
+let begunSaid = "";
+
+/** Turn now is heard once for each turn, on every screen; the steer of a new leg is said. */
+function call(leg: LegSeen, lengthM: number, variationDeg: number | null): void {
+  const key = `${leg.search}/${leg.leg}`;
+  const view = legView(leg, lengthM, variationDeg);
+  if (isTurn(leg) && called !== key) {
+    called = key;
+    play("turn");
+    if (m.speech.value) say([view.turn, view.next].filter(Boolean).join(". "));
+  } else if (!leg.paused && begunSaid !== key) {
+    begunSaid = key;
+    if (m.speech.value && view.steer) say(`${view.leg}. ${t("search.steer")} ${[...view.steer.figure].join(" ")}`);
+  }
+}
+
 /** Moves on to the next leg when this one has been done for a while. Called with every frame. */
 export function follow(s: Selection, frame: Frame | null): void {
   const leg = frame?.leg ?? null;
   const r = running(s.state);
+  if (leg && r?.event === leg.search && !s.person?.in_sight) call(leg, r.legs[leg.leg - 1]?.length_m ?? 0, frame?.variation_deg ?? null);
   if (!leg?.done || leg.paused || s.person?.in_sight || !r || r.event !== leg.search || r.leg !== leg.leg) {
     done = { leg: "", ms: 0 };
     return;

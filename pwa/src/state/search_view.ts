@@ -52,7 +52,8 @@ export function legView(leg: LegSeen, lengthM: number, variationDeg: number | nu
   };
 }
 
-function isTurn(leg: LegSeen): boolean {
+/** The order is to turn. */
+export function isTurn(leg: LegSeen): boolean {
   return !leg.paused && (!!leg.done || (leg.turn_in_s !== null && leg.turn_in_s <= TURN_NOW_S));
 }
 
