@@ -51,7 +51,7 @@ export function Search({ selection, close }: Props) {
   };
   return (
     <main class="search">
-      <Top selection={selection} frame={frame} leg={leg} />
+      <Top selection={selection} frame={frame} title={leg?.leg ?? (proposal && !laid ? proposalView(proposal).title : t("search.title"))} />
       <Plot view={view} />
       {sheet.value ? (
         <SheetOf selection={selection} frame={frame} back={back} />
@@ -77,13 +77,13 @@ function SheetOf({ selection, frame, back }: { selection: Selection; frame: Fram
   return <SearchMore selection={selection} frame={frame} close={shut} ring={back} open={(s) => (sheet.value = s)} up={plotUp} />;
 }
 
-function Top({ selection, frame, leg }: { selection: Selection; frame: Frame | null; leg: LegView | null }) {
+function Top({ selection, frame, title }: { selection: Selection; frame: Frame | null; title: string }) {
   const link = linkNow();
   const fell = Date.parse(selection.mark?.fell_at ?? selection.state.opened_at);
   const stale = !frame?.fix || !!frame.fix.stale;
   return (
     <header class="top">
-      <h1 class="elapsed search-title">{leg ? leg.leg : t("search.title")}</h1>
+      <h1 class={title.length > 12 ? "elapsed search-title long" : "elapsed search-title"}>{title}</h1>
       <div class="chips">
         <p>{elapsed((commonNow() - fell) / 1000)} {t("search.since")}</p>
         <p class={`chip ${stale ? "warn" : link.level}`}>
@@ -107,9 +107,8 @@ function Before({ selection, back }: { selection: Selection; back: () => void })
       <section class="words search-words">
         {view ? (
           <>
-            <p class="order">{view.title}. {view.first}</p>
-            <p class="search-line">{view.size}</p>
-            <p class="search-line">{view.coverage} {view.pod}</p>
+            <p class="order">{view.first}</p>
+            <p class="search-line">{view.size}. {view.coverage} {view.pod}</p>
             <p class="search-soft">{t("search.reason", { reason: view.reason })}</p>
             <p class="search-soft search-notes">{[view.width, ...view.notes].filter(Boolean).join(". ")}</p>
           </>
