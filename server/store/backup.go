@@ -15,7 +15,7 @@ import (
 func (s *Store) Backup(path string) error {
 	im := s.image()
 	im.epoch = newEpoch() // what is written after it is put back must not be taken for the numbers that the phones know
-	tmp := path + ".new"
+	tmp := path + staged
 	err := removeIf(s.opt.FS, tmp)
 	if err == nil {
 		err = s.backupTo(tmp, im)

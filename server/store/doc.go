@@ -33,8 +33,9 @@
 //	wakeback.lock     held while a process has the store open
 //
 // The journals only grow: the first by the events and documents, about a
-// kilobyte each, the second by about 50 kB an hour and vessel. tracks.db takes
-// about 50 kB an hour at 1 Hz; a test measures both.
+// kilobyte each, the second by about 65 kB for each hour of one vessel at 1 Hz
+// written every ten seconds. tracks.db takes about 50 kB for the same hour. A
+// test measures both.
 //
 // Tracks have files of their own, so that a mark never waits for the flush of
 // a breadcrumb, so that damage to the much larger track never touches an

@@ -182,9 +182,12 @@ func TestDamagedFileIsRebuilt(t *testing.T) {
 	db, journal := slurp(t, origin, dbName), slurp(t, origin, journalName)
 	page := os.Getpagesize()
 	damages := map[string]func([]byte, int) []byte{
-		"flipped bit": func(b []byte, at int) []byte { b[at+page/3] ^= 4; return b },
-		"zeros":       func(b []byte, at int) []byte { clear(b[at : at+page]); return b },
-		"cut short":   func(b []byte, at int) []byte { return b[:at] },
+		"flipped bit in the head": func(b []byte, at int) []byte { b[at+10] ^= 4; return b },
+		"flipped bit in a list":   func(b []byte, at int) []byte { b[at+36] ^= 4; return b },
+		"flipped bit":             func(b []byte, at int) []byte { b[at+page/3] ^= 4; return b },
+		"flipped bit at the end":  func(b []byte, at int) []byte { b[at+page-40] ^= 4; return b },
+		"zeros":                   func(b []byte, at int) []byte { clear(b[at : at+page]); return b },
+		"cut short":               func(b []byte, at int) []byte { return b[:at] },
 	}
 	modes := map[Mode]int{}
 	for name, damage := range damages {

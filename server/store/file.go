@@ -99,11 +99,10 @@ func readFile(path string) (im image, err error) {
 	return im, err
 }
 
-// createFile makes wakeback.db from an image, whole or not at all: a power
-// cut in the midst of making one must not look like damage. What stands there
-// is set aside, under a name with why in it.
-func (o *opening) createFile(im image, why string) error {
-	tmp := o.db + ".new"
+// stageFile makes wakeback.db from an image under the name that [opening.install]
+// takes it from: a power cut in the midst must not look like damage.
+func (o *opening) stageFile(im image) error {
+	tmp := o.db + staged
 	if err := removeIf(o.opt.FS, tmp); err != nil {
 		return err
 	}
@@ -115,10 +114,7 @@ func (o *opening) createFile(im image, why string) error {
 	if err = errors.Join(err, db.Close()); err != nil {
 		return fmt.Errorf("make %s: %w", o.db, err)
 	}
-	if err := o.aside(o.db, why); err != nil {
-		return err
-	}
-	return move(o.opt.FS, tmp, o.db)
+	return nil
 }
 
 func fillFile(tx *bbolt.Tx, im image) error {

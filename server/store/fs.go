@@ -80,20 +80,35 @@ func setAside(fs FS, path, why string, now time.Time) (string, error) {
 	return to, nil
 }
 
-// writeFile writes a whole file so that it is there whole or not at all.
-func writeFile(fs FS, path string, data []byte) error {
-	tmp := path + ".new"
-	f, err := fs.Create(tmp)
+// staged ends the name of a file that is not whole yet.
+const staged = ".new"
+
+// stage writes a whole file under the name that it is moved from when it is
+// on the medium.
+func stage(fs FS, path string, data []byte) error {
+	f, err := fs.Create(path + staged)
 	if err != nil {
 		return fmt.Errorf("write %s: %w", path, err)
 	}
-	if _, err := f.Write(data); err != nil {
+	n, err := f.Write(data)
+	if err == nil && n < len(data) {
+		err = io.ErrShortWrite
+	}
+	if err != nil {
 		return fmt.Errorf("write %s: %w", path, errors.Join(err, f.Close()))
 	}
 	if err := errors.Join(f.Sync(), f.Close()); err != nil {
 		return fmt.Errorf("write %s: %w", path, err)
 	}
-	return move(fs, tmp, path)
+	return nil
+}
+
+// writeFile writes a whole file so that it is there whole or not at all.
+func writeFile(fs FS, path string, data []byte) error {
+	if err := stage(fs, path, data); err != nil {
+		return err
+	}
+	return move(fs, path+staged, path)
 }
 
 func exists(path string) bool {

@@ -6,6 +6,7 @@ import (
 	"encoding/hex"
 	"errors"
 	"fmt"
+	"io"
 	"log/slog"
 	"os"
 	"path/filepath"
@@ -204,20 +205,8 @@ func (o *opening) settle(c collected) (*Store, error) {
 
 // write makes or mends both files and opens them.
 func (o *opening) write(c collected) (*bbolt.DB, File, error) {
-	fs := o.opt.FS
-	if err := removeIf(fs, o.journal+".new"); err != nil {
-		return nil, nil, err
-	}
-	if c.remakeFile {
-		if err := o.createFile(c.im, c.why); err != nil {
-			return nil, nil, err
-		}
-	}
-	if err := o.settleJournal(c); err != nil {
-		return nil, nil, err
-	}
-	if err := removeIf(fs, filepath.Join(o.opt.Dir, failedName)); err != nil {
-		return nil, nil, err
+	if err := o.settleFiles(c); err != nil {
+		return nil, nil, errors.Join(err, o.unstage())
 	}
 	db, err := bbolt.Open(o.db, 0o600, boltOptions(false, o.opt.MaxSize))
 	if err != nil {
@@ -230,34 +219,68 @@ func (o *opening) write(c collected) (*bbolt.DB, File, error) {
 	if err != nil {
 		return nil, nil, errors.Join(err, db.Close())
 	}
-	f, err := fs.Append(o.journal)
+	f, err := o.opt.FS.Append(o.journal)
 	if err != nil {
 		return nil, nil, errors.Join(err, db.Close())
 	}
 	return db, f, nil
 }
 
-// settleJournal makes the journal hold the image: anew, or by adding to it
-// what it does not have.
-func (o *opening) settleJournal(c collected) error {
-	rest, err := framesOf(c.im, c.journalEvents)
+// settleFiles makes the files that are made anew, both of them whole before
+// either is put in its place, and adds to the journal what it lacks.
+func (o *opening) settleFiles(c collected) error {
+	text, err := c.journalText()
 	if err != nil {
 		return err
 	}
-	var text []byte
-	for _, f := range rest {
-		text = appendFrame(text, f)
+	if c.remakeFile {
+		if err := o.stageFile(c.im); err != nil {
+			return err
+		}
+	}
+	if c.remakeJournal {
+		if err := stage(o.opt.FS, o.journal, append(header(c.im.epoch), text...)); err != nil {
+			return err
+		}
+	}
+	if c.remakeFile {
+		if err := o.install(o.db, c.why); err != nil {
+			return err
+		}
 	}
 	switch {
 	case c.remakeJournal:
-		if err := o.aside(o.journal, c.whyJournal); err != nil {
-			return err
-		}
-		return writeFile(o.opt.FS, o.journal, append(header(c.im.epoch), text...))
+		err = o.install(o.journal, c.whyJournal)
 	case c.addToJournal:
-		return o.appendJournal(text)
+		err = o.appendJournal(text)
 	}
-	return nil
+	if err != nil {
+		return err
+	}
+	return removeIf(o.opt.FS, filepath.Join(o.opt.Dir, failedName))
+}
+
+// install puts a staged file in its place and sets aside what stands there.
+func (o *opening) install(path, why string) error {
+	if err := o.aside(path, why); err != nil {
+		return err
+	}
+	return move(o.opt.FS, path+staged, path)
+}
+
+// unstage takes away what was staged: a disk that is full must not be filled
+// with it further.
+func (o *opening) unstage() error {
+	return errors.Join(removeIf(o.opt.FS, o.db+staged), removeIf(o.opt.FS, o.journal+staged))
+}
+
+// journalText is what the journal lacks, as frames.
+func (c *collected) journalText() (text []byte, err error) {
+	rest, err := framesOf(c.im, c.journalEvents)
+	for _, f := range rest {
+		text = appendFrame(text, f)
+	}
+	return text, err
 }
 
 func (o *opening) appendJournal(text []byte) error {
@@ -265,8 +288,11 @@ func (o *opening) appendJournal(text []byte) error {
 	if err != nil {
 		return err
 	}
-	_, err = f.Write(text)
-	if err == nil {
+	n, err := f.Write(text)
+	switch {
+	case err == nil && n < len(text):
+		err = io.ErrShortWrite
+	case err == nil:
 		err = f.Sync()
 	}
 	return errors.Join(err, f.Close())

@@ -26,6 +26,20 @@ const (
 // errTrack is wrapped when a block does not check.
 var errTrack = errors.New("a stretch of track is damaged")
 
+// recordable leaves out fixes that are nowhere on earth; one of them must not
+// cost the others their block.
+func recordable(fixes []nav.Fix) []nav.Fix {
+	out := make([]nav.Fix, 0, len(fixes))
+	for _, f := range fixes {
+		lat, lon := f.Position.LatDeg(), f.Position.LonDeg()
+		if math.Abs(lat) <= 90 && math.Abs(lon) <= 180 { // false for NaN
+			f.At = f.At.UTC().Truncate(time.Millisecond)
+			out = append(out, f)
+		}
+	}
+	return nav.NewTrack(out).Fixes()
+}
+
 // encodeFixes makes a block of fixes in order of time.
 func encodeFixes(fixes []nav.Fix) []byte {
 	out := make([]byte, 4, 4+12*len(fixes))

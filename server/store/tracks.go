@@ -71,11 +71,12 @@ func (t *tracks) fail(err error) error {
 	return fmt.Errorf("%w: %w", ErrNotDurable, err)
 }
 
-// AppendTrack keeps fixes of a device, in any order. When it returns they are
+// AppendTrack keeps fixes of a device, in any order, to the millisecond and
+// 1e-7 degree; those without a place on earth are left out. When it returns they are
 // on disk, in one file; the journal of tracks is flushed once a minute. It
 // shares no lock with [Store.Append].
 func (s *Store) AppendTrack(device incident.DeviceID, fixes []nav.Fix) error {
-	return s.tracks.append(string(device), nav.NewTrack(fixes).Fixes())
+	return s.tracks.append(string(device), recordable(fixes))
 }
 
 // trackFlush is how much of its second copy a track may lose with the power.
@@ -185,7 +186,7 @@ func (t *tracks) close() error {
 
 // makeFile makes an empty tracks.db, whole or not at all.
 func (t *tracks) makeFile(path string) error {
-	tmp := path + ".new"
+	tmp := path + staged
 	if err := removeIf(t.fs, tmp); err != nil {
 		return err
 	}
