@@ -228,6 +228,9 @@ type sign struct {
 	at     time.Time
 	device DeviceID
 	mark   EventID // "" for a sighting or a beacon
+	// beacon is whose beacon spoke; 0 for no beacon. One that goes on sending
+	// from a person who is aboard again says nothing.
+	beacon PersonNo
 }
 
 // signGrace: a sighting on another device so shortly before a stand-down may
@@ -248,6 +251,9 @@ func (f *folder) finishStatus() {
 			if m, ok := f.s.Mark(sg.mark); !ok || m.Dismissed.IsSet() {
 				continue
 			}
+		}
+		if p, ok := f.persons[sg.beacon]; ok && p.Status == IsAboard {
+			continue
 		}
 		fresh := sg.at.After(down)
 		unknown := sg.mark == "" && sg.device != f.decidedOn && !sg.at.Before(down.Add(-signGrace))

@@ -172,5 +172,5 @@ func (f *folder) beacon(e *entry, b *Beacon) {
 	}
 	p := f.personOf(no, e)
 	p.Beacon = nav.Some(BeaconSaid{e.said(), *b})
-	f.signs = append(f.signs, sign{at: e.At, device: e.Device})
+	f.signs = append(f.signs, sign{at: e.At, device: e.Device, beacon: no})
 }

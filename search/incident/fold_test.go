@@ -240,6 +240,29 @@ func TestStandDownYieldsToSigns(t *testing.T) {
 	}
 }
 
+// A beacon that goes on sending keeps an incident open, unless the one who
+// wears it is aboard again.
+func TestBeaconAfterStandDown(t *testing.T) {
+	for _, aboard := range []bool{false, true} {
+		s := newStory(t)
+		m := markedAt(54, 7)
+		m.Mmsi = 972123456
+		s.say("z", 0, KindMarked, m)
+		if aboard {
+			s.say("a", 90, KindAboard, Aboard{Condition: "well"})
+		}
+		s.say("a", 100, KindStoodDown, StoodDown{Reason: "over"})
+		s.say("z", 110, KindBeacon, Beacon{Mmsi: 972123456, Position: nav.PositionFromDegrees(54, 7)})
+		want := Open
+		if aboard {
+			want = StoodDownSt
+		}
+		if got := s.state().Status; got != want {
+			t.Errorf("aboard %t: %s, want %s", aboard, got, want)
+		}
+	}
+}
+
 func TestChargeTerms(t *testing.T) {
 	s := newStory(t)
 	s.say("a", 0, KindMarked, markedAt(54, 7))

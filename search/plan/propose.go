@@ -171,7 +171,8 @@ func (s Scene) squareLegs(spacingM float64) int {
 	k := max(1, math.Ceil(s.ErrorM/spacingM))
 	if s.Limit > 0 && s.SpeedKn > 0 {
 		run := s.SpeedKn * nav.MsPerKn * s.Limit.Seconds()
-		k = min(k, max(1, math.Floor(math.Sqrt(run/(4*spacingM)))))
+		// 4k+1 legs are (2k+1)² spacings long.
+		k = min(k, max(1, math.Floor((math.Sqrt(run/spacingM)-1)/2)))
 	}
 	return int(min(k, 30))*4 + 1
 }

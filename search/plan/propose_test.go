@@ -124,8 +124,7 @@ func TestPlansHoldWhatTheySay(t *testing.T) {
 			if p.PODPoor > p.PODIdeal || p.PODIdeal > 1 {
 				rt.Fatalf("%s: POD %v and %v", p.Pattern, p.PODIdeal, p.PODPoor)
 			}
-			if p.Pattern == "square" && len(p.Legs) > 5 && p.TakesS > s.Limit.Seconds()*1.35 {
-				// The last leg is not cut short: up to a quarter more than 4k²d.
+			if p.Pattern == "square" && len(p.Legs) > 5 && p.TakesS > s.Limit.Seconds() {
 				rt.Fatalf("takes %v s, limit %v", p.TakesS, s.Limit)
 			}
 			if last := p.Legs[len(p.Legs)-1]; p.Pattern == "sector" && last.To.RangeM() > 1 {
