@@ -10,7 +10,7 @@ import { withProgram } from "./real.mjs";
 const shots = new URL("../../test-results/screens/", import.meta.url).pathname;
 
 /** A phone with a mark and the engine, its touches counted. */
-async function marked(s, options = {}) {
+export async function marked(s, options = {}) {
   const fake = await s.server();
   const p = await s.phone({ scale: 1, ...options });
   await Promise.all([p.whole(), p.engine()]);
@@ -20,7 +20,7 @@ async function marked(s, options = {}) {
   return { fake, p };
 }
 
-async function begun(s, options) {
+export async function begun(s, options) {
   const { fake, p } = await marked(s, options);
   await p.page.locator(".search-touch").tap();
   await p.page.locator("button:not([disabled])", { hasText: "BEGIN" }).tap({ timeout: 10_000 });
@@ -32,7 +32,7 @@ const kinds = (fake) => fake.events.map((e) => e.kind);
 const of = (fake, kind) => fake.events.filter((e) => e.kind === kind);
 
 /** Puts the phone so far along a leg of a plan, and so far off it to the right. */
-async function onLeg(p, laid, no, share, offM = 0) {
+export async function onLeg(p, laid, no, share, offM = 0) {
   const leg = laid.legs[no - 1];
   const rad = Math.PI / 180;
   const rides = laid.datum_drift.drift_kn * (1852 / 3600) * ((Date.now() - Date.parse(laid.begin)) / 1000);
@@ -130,9 +130,9 @@ export const stories = {
     await p.tap("Lifejacket");
     await until("it is logged", () => kinds(fake).includes("person"));
     assert.deepEqual(of(fake, "person")[0].body, { person: 1, object: "person-sitting", clothing: "lifejacket", moving: "unknown", life_jacket: "worn" });
-    await p.page.getByLabel("From, degrees true").fill("240");
+    await p.page.getByLabel("From, deg true").fill("240");
     await p.page.getByLabel("Beaufort", { exact: true }).and(p.page.locator("input")).fill("4");
-    await p.page.locator("form", { has: p.page.getByLabel("From, degrees true") }).locator("button").tap();
+    await p.page.locator("form", { has: p.page.getByLabel("From, deg true") }).locator("button").tap();
     await until("wind", () => kinds(fake).includes("wind"));
     assert.deepEqual(of(fake, "wind")[0].body, { from_deg: 240, speed_kn: 13, source: "person" });
     await p.says("from 240, 13.0 kn");

@@ -70,7 +70,8 @@ function CloudLayer({ view, on }: { view: PlotView; on: (p: Position) => XY }) {
 /** Three kinds of line and their words: done, being steered, to do; and what was left out. */
 function Legs({ legs, on }: { legs: PlotLeg[]; on: (p: Position) => XY }) {
   const of = (style: PlotLeg["style"]): string => legs.filter((l) => l.style === style).map((l) => line([on(l.from), on(l.to)])).join("");
-  const now = legs.findLast((l) => l.style === "now");
+  // Of a plan that has not begun, the first leg has the head: it shows the way.
+  const now = legs.findLast((l) => l.style === "now") ?? (legs.every((l) => l.style === "todo") ? legs[0] : undefined);
   return (
     <g>
       <path class="leg left_out" d={of("left_out")} />

@@ -95,7 +95,7 @@ function Fields({ fields, set }: { fields: { word: string; least: number; most: 
         {fields.map((g, i) => (
           <label key={g.word}>
             {g.word}
-            <input type="text" inputMode="decimal" placeholder={g.hint} value={texts[i]} onInput={(e) => setTexts(texts.map((x, j) => (j === i ? e.currentTarget.value : x)))} />
+            <input type="text" inputMode="decimal" placeholder={t("assume.like", { n: g.hint })} value={texts[i]} onInput={(e) => setTexts(texts.map((x, j) => (j === i ? e.currentTarget.value : x)))} />
           </label>
         ))}
       </div>

@@ -126,7 +126,7 @@ describe("a proposal", () => {
     expect(v.coverage).toBe("Coverage 0.57.");
     expect(v.title).toBe("Sector search");
     expect(v.size).toBe("1 legs, 4.50 nm, 45 min");
-    expect(v.notes).toEqual(["Does not reach over the whole error", "n"]);
+    expect(v.notes).toEqual(["Does not reach over the whole error", "N"]);
     expect(JSON.stringify(v)).not.toMatch(/success/i);
   });
 

@@ -184,9 +184,12 @@ export function proposalView(p: Proposal): ProposalView {
     coverage: t("search.coverage", { coverage: p.coverage.toFixed(2) }),
     pod: t("search.pod_planned", { poor: percent(p.pod_poor), ideal: percent(p.pod_ideal) }),
     width: body.sweep_width_nm ? t("search.width", { width: f.rangeText(body.sweep_width_nm * 1852), by: body.sweep_width_by ?? "" }) : "",
-    notes,
+    notes: notes.map(sentence),
   };
 }
+
+/** The engine's words, as a sentence of their own. */
+const sentence = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
 
 /** Never rounded up to certainty. */
 export function percent(share: number): string {
