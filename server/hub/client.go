@@ -137,7 +137,10 @@ func (c *Client) hello(req Request) error {
 	last := c.hub.last
 	c.hub.mu.Unlock()
 	c.cursor = req.After
-	reset := req.After > 0 && (req.Epoch != "" && req.Epoch != epoch || req.After > last)
+	// What is on disk may be a moment ahead of what is published, and a client
+	// may know of it already.
+	ahead := max(last, c.hub.cfg.Source.LastSeq())
+	reset := req.After > 0 && (req.Epoch != "" && req.Epoch != epoch || req.After > ahead)
 	if reset {
 		c.cursor = 0
 	}

@@ -218,7 +218,7 @@ func TestAnotherEpochBeginsAnew(t *testing.T) {
 }
 
 func TestStateIsOverwrittenInPlace(t *testing.T) {
-	s := newStand(t, nil)
+	s := newStand(t, func(c *Config) { c.Limits.WriteWait = time.Minute }) // the reader below is slow on purpose
 	big := strings.Repeat("x", 16<<10)
 	c := dial(t, s, "")
 	defer c.Close()
