@@ -109,6 +109,33 @@ export const stories = {
     assert.deepEqual(order, ["search_laid", "leg_begun", "leg_ended", "search_paused", "search_resumed", "leg_begun"]);
   },
 
+  "search: a leg left out after a part counts that part alone, and the rest is drawn as a gap": async (s) => {
+    const { fake, p } = await begun(s);
+    await until("the log has it", () => kinds(fake).includes("leg_begun"));
+    const laid = of(fake, "search_laid")[0].body;
+    await onLeg(p, laid, 1, 0.4);
+    // Six tenths of the first leg's 0.4 nm take 2 min 53 at 5 kn, and the whole of it nearly 5.
+    await p.says("turn in 2 min");
+    await p.tap("More", ".touch");
+    await p.tap("Leave out");
+    await until("it is logged", () => of(fake, "leg_begun").length === 2);
+    const body = of(fake, "leg_ended")[0].body;
+    assert.equal(body.how, "skipped");
+    assert(Math.abs(body.part - 0.4) < 0.05, `part ${body.part}`);
+    await p.page.waitForFunction(() => document.querySelector(".leg.left_out")?.getAttribute("d"));
+  },
+
+  "search: a mark made meanwhile shows the ring on every phone": async (s) => {
+    const { p } = await begun(s);
+    const q = await s.phone({ scale: 1 });
+    await Promise.all([q.whole(), q.engine()]);
+    await q.returning();
+    await q.settled();
+    await q.mark(".touch .second");
+    await p.returning();
+    await p.says("Person 2");
+  },
+
   "search: of two phones one moves on": async (s) => {
     const { fake, p } = await begun(s);
     await until("the log has it", () => kinds(fake).includes("leg_begun"));

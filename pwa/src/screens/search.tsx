@@ -10,7 +10,7 @@ import { pickFrame } from "../state/frames";
 import * as m from "../state/model";
 import { plotView } from "../state/plot_source";
 import * as search from "../state/search";
-import { legView, type LegView, percent, proposalView, running } from "../state/search_view";
+import { finished, legView, type LegView, percent, proposalView, running } from "../state/search_view";
 import type { Selection } from "../state/select";
 import { track } from "../state/track";
 import { commonNow } from "../sync/clock";
@@ -40,6 +40,7 @@ export function Search({ selection, close }: Props) {
   const laid = running(selection.state);
   const leg = laid ? legOf(frame, laid) : null;
   useEffect(() => search.refresh(selection, frame), [now]);
+  useEscape();
   const proposal = search.proposals.value[search.shown.value] ?? null;
   const view = plotView({
     selection, frame, proposal: proposal?.body ?? null, cloud: search.cloud.value, searched: search.searched.value,
@@ -68,6 +69,16 @@ function legOf(frame: Frame | null, laid: Laid): LegView | null {
   const leg = frame?.leg;
   if (!leg || leg.search !== laid.event) return null;
   return legView(leg, laid.legs[leg.leg - 1]?.length_m ?? 0, frame.variation_deg);
+}
+
+function useEscape(): void {
+  useEffect(() => {
+    const shut = (e: KeyboardEvent): void => {
+      if (e.key === "Escape") sheet.value = "";
+    };
+    document.addEventListener("keydown", shut);
+    return () => document.removeEventListener("keydown", shut);
+  }, []);
 }
 
 function SheetOf({ selection, frame, back }: { selection: Selection; frame: Frame | null; back: () => void }) {
@@ -105,6 +116,7 @@ function Before({ selection, back }: { selection: Selection; back: () => void })
   return (
     <>
       <section class="words search-words">
+        {finished(selection.state) && <p class="search-line">{t("search.finished")}</p>}
         {view ? (
           <>
             <p class="order">{view.first}</p>

@@ -3,7 +3,7 @@
 
 import { signal } from "@preact/signals";
 import type { ComponentType } from "preact";
-import { useEffect } from "preact/hooks";
+import { useEffect, useRef } from "preact/hooks";
 import * as m from "../state/model";
 import { pickFrame } from "../state/frames";
 import { running } from "../state/search_view";
@@ -46,7 +46,7 @@ export function openSearch(incident: string): void {
   load();
 }
 
-/** The search screen is wanted for this selection. A mark made since shows the ring. */
+/** The search screen is wanted for this selection, and is here. */
 export const showsSearch = (s: Selection): boolean => searching.value === s.state.id && !!screens.value;
 
 /** The screen, once loaded. */
@@ -63,6 +63,13 @@ export function useSearchKeeper(selection: Selection | null): void {
     // An incident is open: the screen is fetched in the quiet, to be there when the server is not.
     if (open) load();
   }, [open]);
+  // One more mark, by anyone: every phone shows the ring, which says where to.
+  const marks = selection?.state.marks.length ?? 0;
+  const before = useRef(marks);
+  useEffect(() => {
+    if (marks > before.current) searching.value = "";
+    before.current = marks;
+  }, [marks]);
   const held = selection && runs ? pickFrame(selection, m.serverFrames.value, m.ownFrame.value, m.nowMs.value).held : null;
   useEffect(() => {
     if (selection && runs) screens.value?.follow(selection, held?.frame ?? null);

@@ -346,6 +346,7 @@ export const en = {
   "search.pattern.parallel": "Parallel sweep",
   "search.pattern.creeping": "Creeping line",
   "search.pattern.track": "Track line",
+  "search.finished": "All legs are run. Searched means looked at, not empty: the next is turned against it.",
   "search.first": "First leg {bearing} T, {length}",
   "search.size": "{legs} legs, {length}, {time}",
   "search.coverage": "Coverage {coverage}.",
