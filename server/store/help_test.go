@@ -1,6 +1,8 @@
 package store
 
 import (
+	"encoding/binary"
+	"hash/crc32"
 	"os"
 	"testing"
 
@@ -32,4 +34,11 @@ func quickDir(t *testing.T) string {
 	}
 	t.Cleanup(func() { _ = os.RemoveAll(dir) })
 	return dir
+}
+
+// seal puts the right checksum before the rest of a block.
+func seal(rest []byte) []byte {
+	out := append(make([]byte, 4), rest...)
+	binary.BigEndian.PutUint32(out, crc32.Checksum(rest, crcTable))
+	return out
 }

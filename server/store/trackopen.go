@@ -90,11 +90,13 @@ func (t *tracks) takeFrom(main *bbolt.DB) error {
 
 // copyTo copies all blocks into a bucket of another file.
 func (t *tracks) copyTo(to *bbolt.DB) error {
-	db, err := t.current()
-	if err != nil {
-		return nil // there are no tracks to copy
+	t.state.RLock()
+	none := t.db == nil
+	t.state.RUnlock()
+	if none {
+		return nil
 	}
-	return copyBlocks(to, db)
+	return t.use(func(db *bbolt.DB) error { return copyBlocks(to, db) })
 }
 
 // copyStep bounds one transaction of copying, in blocks: some 4 MB.
@@ -200,11 +202,7 @@ func (t *tracks) restoreSome(payloads [][]byte) error {
 	}
 	t.mu.Lock()
 	defer t.mu.Unlock()
-	db, err := t.current()
-	if err != nil {
-		return err
-	}
-	return guarded(func() error {
+	return t.use(func(db *bbolt.DB) error {
 		return db.Update(func(tx *bbolt.Tx) error {
 			for device, fixes := range found {
 				if err := putTrack(tx.Bucket(bucketTracks), device, nav.NewTrack(fixes).Fixes()); err != nil {
@@ -232,7 +230,7 @@ func (t *tracks) renew() error {
 	if err != nil {
 		return err
 	}
-	if err := guarded(func() error { return t.copyTo(db) }); err != nil {
+	if err := t.copyTo(db); err != nil {
 		t.log.Error("copy positions to a fresh file", "error", err)
 		if errors.Is(classify(err), ErrDiskFull) {
 			return errors.Join(err, db.Close(), removeIf(t.fs, fresh))
@@ -253,10 +251,11 @@ func (t *tracks) swap(db *bbolt.DB, fresh string) error {
 		return errors.Join(err, db.Close())
 	}
 	t.state.Lock()
-	was := t.db
-	t.db, t.failed = db, nil
+	was, broken := t.db, t.broken
+	t.db, t.broken, t.failed = db, nil, nil
 	t.state.Unlock()
 	closeFailed(was)
+	closeFailed(broken)
 	if old.f != nil {
 		_ = old.f.Close()
 	}

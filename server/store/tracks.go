@@ -32,6 +32,7 @@ type tracks struct {
 	// state guards which file is open and what failed; never held while the disk works.
 	state  sync.RWMutex
 	db     *bbolt.DB
+	broken *bbolt.DB // one that had a fault
 	failed error
 
 	back sync.WaitGroup // reading back from the journal
@@ -46,14 +47,25 @@ func newTracks(opt Options) *tracks {
 	}
 }
 
-// current is the file that is open.
-func (t *tracks) current() (*bbolt.DB, error) {
+// use works on the file that is open. After a fault bbolt may hold its own
+// locks for ever, so that the file is not touched again until it is renewed.
+func (t *tracks) use(fn func(*bbolt.DB) error) error {
 	t.state.RLock()
-	defer t.state.RUnlock()
-	if t.db == nil {
-		return nil, errors.Join(errors.New("the file of tracks is not open"), t.failed)
+	db, failed := t.db, t.failed
+	t.state.RUnlock()
+	if db == nil {
+		return errors.Join(errors.New("the file of tracks is not open"), failed)
 	}
-	return t.db, nil
+	err := guarded(func() error { return fn(db) })
+	if errors.Is(err, errFault) {
+		_ = t.fail(err)
+		t.state.Lock()
+		if t.db == db {
+			t.db, t.broken = nil, db
+		}
+		t.state.Unlock()
+	}
+	return err
 }
 
 func (t *tracks) problem() error {
@@ -96,11 +108,7 @@ func (t *tracks) append(device string, fixes []nav.Fix) error {
 	if err := t.problem(); err != nil {
 		return fmt.Errorf("%w: %w", ErrNotDurable, err)
 	}
-	db, err := t.current()
-	if err != nil {
-		return fmt.Errorf("%w: %w", ErrNotDurable, err)
-	}
-	err = guarded(func() error {
+	err = t.use(func(db *bbolt.DB) error {
 		return db.Update(func(tx *bbolt.Tx) error { return putTrack(tx.Bucket(bucketTracks), device, fixes) })
 	})
 	if err == nil {
@@ -151,11 +159,7 @@ func (s *Store) TrackDevices() ([]incident.DeviceID, error) {
 }
 
 func (t *tracks) view(fn func(*bbolt.Bucket) error) error {
-	db, err := t.current()
-	if err != nil {
-		return err
-	}
-	return guarded(func() error {
+	return t.use(func(db *bbolt.DB) error {
 		return db.View(func(tx *bbolt.Tx) error { return fn(tx.Bucket(bucketTracks)) })
 	})
 }
@@ -167,9 +171,10 @@ func (t *tracks) close() error {
 	t.mu.Lock()
 	defer t.mu.Unlock()
 	t.state.Lock()
-	db, failed := t.db, t.failed
-	t.db = nil
+	db, broken, failed := t.db, t.broken, t.failed
+	t.db, t.broken = nil, nil
 	t.state.Unlock()
+	closeFailed(broken)
 	var err error
 	if t.out.f != nil {
 		if failed == nil {
