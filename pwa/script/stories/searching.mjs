@@ -109,6 +109,17 @@ export const stories = {
     assert.deepEqual(order, ["search_laid", "leg_begun", "leg_ended", "search_paused", "search_resumed", "leg_begun"]);
   },
 
+  "search: a pause that is taken back leaves a leg that is counted again": async (s) => {
+    const { fake, p } = await begun(s);
+    await p.page.waitForSelector(".leg-steer");
+    await p.tap("PAUSE");
+    await p.says("broken off where you left it");
+    await p.tap("Undo");
+    await p.page.waitForSelector(".leg-steer");
+    await until("the leg is begun anew", () => of(fake, "leg_begun").length === 2, 15_000);
+    assert.equal(of(fake, "leg_begun")[1].body.leg, 1);
+  },
+
   "search: a leg left out after a part counts that part alone, and the rest is drawn as a gap": async (s) => {
     const { fake, p } = await begun(s);
     await until("the log has it", () => kinds(fake).includes("leg_begun"));

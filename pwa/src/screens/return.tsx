@@ -162,7 +162,8 @@ function ThingLine({ kind, thing }: { kind: "disc" | "cross"; thing: Thing }) {
 /** How long the undo of the last entry stays in reach; it is in the log for ever. Our choice. */
 const UNDO_MS = 10_000;
 
-function Undo() {
+/** The last entry can be taken back, for a while in one touch. */
+export function Undo() {
   const last = m.lastAct.value;
   if (!last?.undoable || m.nowMs.value - last.ms > UNDO_MS) return null;
   const what = isKey(last.key) ? t(last.key as Key) : last.key;

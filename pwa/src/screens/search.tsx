@@ -20,6 +20,7 @@ import type { Frame } from "../wire/frame";
 import type { Search as Laid } from "../wire/search";
 import { AssumeSheet } from "./assume";
 import { Sign, Waiting } from "./ready";
+import { Undo } from "./return";
 import { ConditionsSheet, SearchMore } from "./search_sheets";
 
 export type SearchSheet = "" | "conditions" | "assume" | "more";
@@ -128,6 +129,7 @@ function Before({ selection, back }: { selection: Selection; back: () => void })
           <p class="order" role="status">{search.trouble.value ? t("search.none", { why: search.trouble.value }) : t("search.laying")}</p>
         )}
         <SearchedLine />
+        <Undo />
       </section>
       <nav class="touch" aria-label={t("search.title")}>
         <button type="button" class="big saves" disabled={!p || search.busy.value} onClick={() => p && void search.begin(selection, p)}>{t("search.begin")}</button>
@@ -157,6 +159,7 @@ function Running({ selection, frame, laid, leg, back }: { selection: Selection; 
         {paused && <p class="order">{t("search.paused_words", { leg: laid.leg })}</p>}
         {leg?.note && <p class="caution"><Sign level="warn" /> {leg.note}</p>}
         <SearchedLine />
+        <Undo />
         <p class="unseen" role="status">{leg ? spoken(leg) : ""}</p>
       </section>
       <nav class="touch" aria-label={t("search.title")}>

@@ -130,7 +130,8 @@ async function once<T>(what: () => Promise<T>): Promise<T | null> {
 export function begin(s: Selection, p: Proposal): Promise<LogEvent | null> {
   return once(async () => {
     const laid = await act.log(s, "search_laid", { ...p.body });
-    return act.log(s, "leg_begun", { search: laid.id, leg: 1 });
+    // No undo over the first order to steer: dropping the search is a hold away.
+    return act.log(s, "leg_begun", { search: laid.id, leg: 1 }, false);
   });
 }
 
@@ -225,11 +226,27 @@ function call(leg: LegSeen, lengthM: number, variationDeg: number | null): void 
   }
 }
 
+/** A search that runs with no leg begun, because a pause or a drop was taken back, begins its leg anew after this. Our choice: longer than two events of one act lie apart. */
+const BARE_MS = 5_000;
+let bare = { search: "", ms: 0 };
+
+function mend(s: Selection, r: Search): void {
+  if (r.status !== "running" || open(r) || s.person?.in_sight) {
+    bare = { search: "", ms: 0 };
+    return;
+  }
+  if (bare.search !== r.event) bare = { search: r.event, ms: Date.now() };
+  if (Date.now() - bare.ms < BARE_MS || !mayAdvance(watch(s, r))) return;
+  bare = { search: "", ms: 0 };
+  void once(() => act.log(s, "leg_begun", { search: r.event, leg: r.leg }, false));
+}
+
 /** Moves on to the next leg when this one has been done for a while. Called with every frame. */
 export function follow(s: Selection, frame: Frame | null): void {
   const leg = frame?.leg ?? null;
   const r = running(s.state);
   if (leg && r?.event === leg.search && !s.person?.in_sight) call(leg, r.legs[leg.leg - 1]?.length_m ?? 0, frame?.variation_deg ?? null);
+  if (r) mend(s, r);
   if (!leg?.done || leg.paused || s.person?.in_sight || !r || r.event !== leg.search || r.leg !== leg.leg) {
     done = { leg: "", ms: 0 };
     return;
