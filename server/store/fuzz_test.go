@@ -2,6 +2,7 @@ package store
 
 import (
 	"bytes"
+	"strings"
 	"testing"
 
 	"wakeback/search/incident"
@@ -23,7 +24,7 @@ func FuzzJournal(f *testing.F) {
 	if err != nil {
 		f.Fatal(err)
 	}
-	whole := appendFrame(appendFrame(header(newEpoch()), fr), doc)
+	whole := appendFrame(appendFrame(header(strings.Repeat("0f", 16)), fr), doc)
 	f.Add([]byte{})
 	f.Add(whole)
 	f.Add(whole[:len(whole)-5])

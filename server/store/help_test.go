@@ -2,8 +2,10 @@ package store
 
 import (
 	"encoding/binary"
+	"flag"
 	"hash/crc32"
 	"os"
+	"strconv"
 	"testing"
 
 	"go.etcd.io/bbolt"
@@ -41,4 +43,15 @@ func seal(rest []byte) []byte {
 	out := append(make([]byte, 4), rest...)
 	binary.BigEndian.PutUint32(out, crc32.Checksum(rest, crcTable))
 	return out
+}
+
+// checks sets how many cases rapid draws in this test.
+func checks(t *testing.T, n int) {
+	t.Helper()
+	f := flag.Lookup("rapid.checks")
+	before := f.Value.String()
+	if err := f.Value.Set(strconv.Itoa(n)); err != nil {
+		t.Fatal(err)
+	}
+	t.Cleanup(func() { _ = f.Value.Set(before) })
 }

@@ -12,6 +12,7 @@ import (
 	"testing"
 	"time"
 
+	"wakeback/drift/nav"
 	"wakeback/search/incident"
 )
 
@@ -39,7 +40,18 @@ func writerMain() {
 			fmt.Fprintln(os.Stderr, err)
 			os.Exit(1)
 		}
-		fmt.Fprintln(out, kept[0].DeviceSeq)
+		n := kept[0].DeviceSeq
+		if n%3 == 0 {
+			err = s.PutDoc("device", "counter", []byte(strconv.FormatUint(n, 10)))
+		}
+		if err == nil && n%2 == 0 {
+			err = s.AppendTrack(phone, []nav.Fix{{At: t0.Add(time.Duration(n) * time.Second)}})
+		}
+		if err != nil {
+			fmt.Fprintln(os.Stderr, err)
+			os.Exit(1)
+		}
+		fmt.Fprintln(out, n)
 		if out.Flush() != nil {
 			os.Exit(0)
 		}
@@ -61,7 +73,8 @@ func writerEvent(c *chain) incident.Event {
 	return e
 }
 
-// The writer is killed at random moments: whatever it acknowledged is there,
+// The writer is killed at random moments, some of them while it opens:
+// whatever it acknowledged is there,
 // once, in an unbroken chain, and opening is quick. The seed is printed.
 func TestKilledWhileWriting(t *testing.T) {
 	rounds := 30
@@ -74,7 +87,7 @@ func TestKilledWhileWriting(t *testing.T) {
 	dir := t.TempDir()
 	acknowledged := uint64(0)
 	for round := range rounds {
-		acknowledged = max(acknowledged, killedRound(t, dir, time.Duration(20+rng.IntN(120))*time.Millisecond))
+		acknowledged = max(acknowledged, killedRound(t, dir, time.Duration(5+rng.IntN(150))*time.Millisecond))
 		begin := time.Now()
 		s, r := open(t, Options{Dir: dir})
 		if took := time.Since(begin); took > 5*time.Second {
@@ -84,12 +97,28 @@ func TestKilledWhileWriting(t *testing.T) {
 			t.Fatalf("round %d: %+v", round, r)
 		}
 		checkChain(t, all(t, s), acknowledged)
+		checkTraffic(t, s, acknowledged, uint64(round))
 		closeStore(t, s)
 	}
 	if acknowledged == 0 {
 		t.Fatal("nothing was written")
 	}
 	t.Logf("%d events acknowledged", acknowledged)
+}
+
+// checkTraffic: the documents and tracks that the writer kept beside the
+// events it acknowledged. Each kill may fall between an event and its document
+// or fix, which the next writer does not make up for.
+func checkTraffic(t *testing.T, s *Store, acknowledged, kills uint64) {
+	t.Helper()
+	docs, _ := s.Docs("device")
+	if got, _ := strconv.ParseUint(string(docs["counter"]), 10, 64); got+6 < acknowledged { // every third has one
+		t.Fatalf("the document says %d, acknowledged were %d", got, acknowledged)
+	}
+	fixes := track(t, s, t0, t0.Add(1e6*time.Second))
+	if uint64(len(fixes))+kills+1 < acknowledged/2 {
+		t.Fatalf("%d of %d fixes", len(fixes), acknowledged/2)
+	}
 }
 
 func killedRound(t *testing.T, dir string, after time.Duration) (acknowledged uint64) {
