@@ -36,7 +36,7 @@ var steps = []step{
 	{"engine", "drift and search for js/wasm", false, checkEngine},
 	{"page", "types, lint and unit tests of the page", false, checkPage},
 	{"build", "engine, page and program", false, func(ctx context.Context, _ options) error { return build(ctx) }},
-	{"go", "Go tests, with the race detector unless -fast", false, goTests},
+	{"go", "Go tests; server and commands with the race detector unless -fast", false, goTests},
 	{"fuzz", "every fuzz target for a moment", true, fuzz},
 	{"browser", "the page in a real browser", true, browser},
 }
