@@ -2,6 +2,7 @@
 // by themselves, breaking off, and what is said of the water that was looked at.
 
 import { mkdirSync } from "node:fs";
+import { copyFile } from "node:fs/promises";
 import { join } from "node:path";
 import { assert, until } from "../stage.mjs";
 import { accessible, fits } from "./looks.mjs";
@@ -43,9 +44,17 @@ export async function onLeg(p, laid, no, share, offM = 0) {
   await p.goes(lat, laid.datum.lon + east / (111_600 * Math.cos(lat * rad)));
 }
 
-const picture = (p, name) => {
+/** Pictures that the reader's tour shows, by what they are called there. */
+const tour = { "search-leg-day-phone": "search", "search-assumed-day-phone": "assumed" };
+
+const picture = async (p, name) => {
   mkdirSync(shots, { recursive: true });
-  return p.page.screenshot({ path: join(shots, `${name}.png`) });
+  await p.page.screenshot({ path: join(shots, `${name}.png`) });
+  const kept = tour[name];
+  if (kept && process.env.WAKEBACK_TOUR) {
+    const file = new URL(`../../tour/${kept}.png`, import.meta.url);
+    await copyFile(join(shots, `${name}.png`), file);
+  }
 };
 
 async function sound(p, what) {
