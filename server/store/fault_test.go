@@ -23,6 +23,9 @@ import (
 func TestDiskFailsAtEveryCall(t *testing.T) {
 	for _, how := range []string{"error", "full", "short", "torn", "lie"} {
 		for _, undo := range []bool{false, true} {
+			if undo && how != "error" {
+				continue // names are lost the same way whatever else fails
+			}
 			for n := 1; ; n++ {
 				if hit := faultRound(t, n, how, undo); hit == "" {
 					if n < 20 {

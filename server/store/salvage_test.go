@@ -232,7 +232,7 @@ func TestWithoutAChecker(t *testing.T) {
 
 // A season of entries opens well within the five seconds.
 func TestOpeningIsQuick(t *testing.T) {
-	dir := t.TempDir()
+	dir := quickDir(t)
 	s, _ := open(t, Options{Dir: dir})
 	c := newChain('a')
 	for range 100 {

@@ -229,20 +229,18 @@ func TestFixNowhere(t *testing.T) {
 	}
 }
 
-// A month of three vessels opens as quickly as an hour.
+// A month opens as quickly as an hour.
 func TestOpeningAfterAMonth(t *testing.T) {
 	dir := quickDir(t)
 	s, _ := open(t, Options{Dir: dir})
 	hour := steaming(t0, 3600)
 	err := s.tracks.db.Update(func(tx *bbolt.Tx) error {
-		for device := range 3 {
-			for h := range 30 * 24 {
-				for i := range hour {
-					hour[i].At = t0.Add(time.Duration(h*3600+i) * time.Second)
-				}
-				if err := putTrack(tx.Bucket(bucketTracks), fmt.Sprint("vessel ", device), hour); err != nil {
-					return err
-				}
+		for h := range 30 * 24 {
+			for i := range hour {
+				hour[i].At = t0.Add(time.Duration(h*3600+i) * time.Second)
+			}
+			if err := putTrack(tx.Bucket(bucketTracks), string(phone), hour); err != nil {
+				return err
 			}
 		}
 		return nil
@@ -263,7 +261,7 @@ func TestOpeningAfterAMonth(t *testing.T) {
 		t.Errorf("%s: %+v", took, r)
 	}
 	begin = time.Now()
-	got, err := s.Track("vessel 1", t0.Add(10*24*time.Hour), t0.Add(11*24*time.Hour))
+	got, err := s.Track(phone, t0.Add(10*24*time.Hour), t0.Add(11*24*time.Hour))
 	if err != nil || len(got) != 86401 {
 		t.Errorf("%d fixes of a day: %v", len(got), err)
 	}
