@@ -46,10 +46,11 @@ const (
 	sayAgain     = 10 * time.Minute
 )
 
-// A heading counts as steady that stayed within steadyDeg for steadyFor:
-// in a turn, log and compass lag.
+// A heading counts as steady that stayed within steadyDeg for steadyFor: in a
+// turn, log and compass lag. A small boat's helm weaves by some degrees all the
+// time, which the mean takes out. Our choice.
 const (
-	steadyDeg = 5
+	steadyDeg = 12
 	steadyFor = 15 * time.Second
 )
 
