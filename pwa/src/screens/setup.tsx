@@ -8,6 +8,7 @@ import * as m from "../state/model";
 import type { Selection } from "../state/select";
 import { t } from "../text/text";
 import { utcTime } from "../units/format";
+import { Instruments } from "./instruments";
 
 const SOUNDS: Sound[] = ["marked", "turn", "closing", "lost"];
 const PALETTES: m.Palette[] = ["day", "dusk", "night"];
@@ -37,6 +38,7 @@ export function SetUp({ selection }: { selection: Selection | null }) {
       {m.notice.value && <p role="status">{m.notice.value}</p>}
       <Name />
       <Pairing />
+      <Instruments />
     </section>
   );
 }
