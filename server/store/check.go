@@ -83,6 +83,9 @@ func walk(path string, ofTracks, pages bool) (v verdict) {
 		}
 		defer db.Close()
 		return db.View(func(tx *bbolt.Tx) error {
+			if err := checkSize(path, tx.Size()); err != nil {
+				return err
+			}
 			if pages {
 				for err := range tx.Check() {
 					return fmt.Errorf("its own check: %w", err)
@@ -101,6 +104,16 @@ func walk(path string, ofTracks, pages bool) (v verdict) {
 	})
 	v.State, v.Problem = stateOf(classify(err))
 	return v
+}
+
+// checkSize finds a file that was cut short. bbolt's own check asks only for
+// the pages that it looks at, and the rest would be a fault when it is read.
+func checkSize(path string, want int64) error {
+	info, err := os.Stat(path)
+	if err == nil && info.Size() < want {
+		err = fmt.Errorf("it is cut short: %d bytes of %d", info.Size(), want)
+	}
+	return err
 }
 
 // walkTracks visits all pages that say where the blocks are. Each block has

@@ -267,3 +267,34 @@ func TestOpeningAfterAMonth(t *testing.T) {
 	}
 	t.Logf("a day of fixes is read in %s", time.Since(begin))
 }
+
+// A file that lacks its last page is damaged, also where that page lies in the
+// midst of a block, which bbolt's own check does not look at (found by
+// TestDamagedTracks on 1 December 2026, on some layouts of the file).
+func TestLastPageIsMissing(t *testing.T) {
+	dir := t.TempDir()
+	s, _ := open(t, Options{Dir: dir})
+	if err := s.AppendTrack(phone, steaming(t0, 1800)); err != nil {
+		t.Fatal(err)
+	}
+	var size int64
+	err := s.tracks.db.View(func(tx *bbolt.Tx) error {
+		size = tx.Size()
+		return nil
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	closeStore(t, s)
+	path := filepath.Join(dir, tracksName)
+	if err := os.Truncate(path, size-int64(os.Getpagesize())); err != nil {
+		t.Fatal(err)
+	}
+	if v, _ := check(t.Context(), path, true); v.State != damaged || !strings.Contains(v.Problem, "cut short") {
+		t.Errorf("verdict %+v", v)
+	}
+	s, _ = open(t, Options{Dir: dir})
+	if got := track(t, s, t0, t0.Add(time.Hour)); len(got) != 1800 {
+		t.Errorf("%d of 1800 fixes came back", len(got))
+	}
+}
