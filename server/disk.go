@@ -13,9 +13,9 @@ type disk struct {
 // Health says how the store is.
 func (d disk) Health() Health {
 	h := d.Store.Health()
-	warnings := d.report.Warnings
-	if warnings == nil {
-		warnings = []string{}
+	warnings := append([]string{}, d.report.Warnings...)
+	if h.TrackProblem != "" {
+		warnings = append(warnings, h.TrackProblem)
 	}
 	return Health{
 		Durable: h.Durable, Problem: h.Problem, Warnings: warnings, Mode: string(d.report.Mode),
