@@ -206,7 +206,7 @@ export class Phone {
 /** Waits until a condition holds here, in this process. */
 export async function until(what, condition, ms = 10_000) {
   const end = Date.now() + ms;
-  while (!condition()) {
+  while (!(await condition())) {
     assert(Date.now() < end, `waited ${ms} ms for: ${what}`);
     await new Promise((ok) => setTimeout(ok, 10));
   }

@@ -39,8 +39,9 @@ export const stories = {
     await a.page.waitForSelector(".return .range");
     const arrowMs = Date.now() - began;
     assert(arrowMs < 60_000);
-    const events = await logOf(s.url);
-    const mark = events.find((e) => e.kind === "marked");
+    const marks = async () => (await logOf(s.url)).filter((e) => e.kind === "marked");
+    await until("the mark is on the server", async () => (await marks()).length === 1);
+    const [mark] = await marks();
     assert.equal(mark.body.source, "vessel");
     assert(mark.body.fix_age_s < 3, `a fix ${mark.body.fix_age_s} s old`);
     await a.saysNot("only on this phone");
