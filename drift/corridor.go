@@ -3,6 +3,7 @@ package drift
 import (
 	"math"
 	"slices"
+	"sort"
 	"time"
 
 	"wakeback/drift/nav"
@@ -52,7 +53,7 @@ func (c Case) moments() []time.Time {
 	for i := 0; i < len(fixes); i += every {
 		moments = append(moments, fixes[i].At)
 	}
-	slices.SortFunc(moments, time.Time.Compare)
+	sort.Slice(moments, func(i, j int) bool { return moments[i].Before(moments[j]) })
 	return slices.CompactFunc(moments, time.Time.Equal)
 }
 

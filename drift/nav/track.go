@@ -46,7 +46,7 @@ type Track struct {
 // one instant the last given stays. The slice is not kept.
 func NewTrack(fixes []Fix) Track {
 	sorted := slices.Clone(fixes)
-	slices.SortStableFunc(sorted, func(a, b Fix) int { return a.At.Compare(b.At) })
+	sort.SliceStable(sorted, func(i, j int) bool { return sorted[i].At.Before(sorted[j].At) })
 	kept := sorted[:0]
 	for i, f := range sorted {
 		if i+1 == len(sorted) || !sorted[i+1].At.Equal(f.At) {

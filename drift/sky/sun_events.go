@@ -1,9 +1,8 @@
 package sky
 
 import (
-	"cmp"
 	"math"
-	"slices"
+	"sort"
 	"time"
 
 	"wakeback/drift/nav"
@@ -103,7 +102,7 @@ func (pl place) curve(from, to float64) []sample {
 		}
 		a, b = b, c
 	}
-	slices.SortFunc(out, func(x, y sample) int { return cmp.Compare(x.unix, y.unix) })
+	sort.Slice(out, func(i, j int) bool { return out[i].unix < out[j].unix })
 	return out
 }
 
@@ -171,7 +170,7 @@ func (pl place) events(curve []sample) []Event {
 			add(Transit, unix)
 		}
 	}
-	slices.SortStableFunc(out, func(a, b Event) int { return a.At.Compare(b.At) })
+	sort.SliceStable(out, func(i, j int) bool { return out[i].At.Before(out[j].At) })
 	return out
 }
 

@@ -60,7 +60,7 @@ func (h *History) Add(s Sample) error {
 }
 
 func (h *History) set(all []Sample) {
-	slices.SortStableFunc(all, compare)
+	sort.SliceStable(all, func(i, j int) bool { return compare(all[i], all[j]) < 0 })
 	all = slices.CompactFunc(all, func(a, b Sample) bool { return compare(a, b) == 0 })
 	h.all, h.obs, h.guide = all, nil, nil
 	for _, s := range all {

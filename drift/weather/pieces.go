@@ -3,6 +3,7 @@ package weather
 import (
 	"math"
 	"slices"
+	"sort"
 	"time"
 
 	"wakeback/drift/nav"
@@ -62,7 +63,7 @@ func (h History) cuts(from, to time.Time) []time.Time {
 	for _, s := range h.guide[lastAt(h.guide, from)+1 : lastAt(h.guide, to)+1] {
 		add(s.From)
 	}
-	slices.SortFunc(cuts, time.Time.Compare)
+	sort.Slice(cuts, func(i, j int) bool { return cuts[i].Before(cuts[j]) })
 	return slices.CompactFunc(cuts, time.Time.Equal)
 }
 

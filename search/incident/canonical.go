@@ -10,6 +10,7 @@ import (
 	"io"
 	"math"
 	"slices"
+	"sort"
 	"strconv"
 	"unicode/utf16"
 )
@@ -78,8 +79,8 @@ func appendObject(dst []byte, members map[string]any, depth int) ([]byte, error)
 	for k := range members {
 		keys = append(keys, k)
 	}
-	slices.SortFunc(keys, func(a, b string) int {
-		return slices.Compare(utf16.Encode([]rune(a)), utf16.Encode([]rune(b)))
+	sort.Slice(keys, func(i, j int) bool {
+		return slices.Compare(utf16.Encode([]rune(keys[i])), utf16.Encode([]rune(keys[j]))) < 0
 	})
 	dst = append(dst, '{')
 	for i, k := range keys {

@@ -2,6 +2,7 @@ package incident
 
 import (
 	"slices"
+	"sort"
 	"time"
 
 	"wakeback/drift/nav"
@@ -145,22 +146,12 @@ func (f *folder) finish() State {
 			f.s.Roles = append(f.s.Roles, r)
 		}
 	}
-	slices.SortFunc(f.s.Roles, func(a, b RoleHeld) int { return compareStrings(a.Role, b.Role) })
+	sort.Slice(f.s.Roles, func(i, j int) bool { return f.s.Roles[i].Role < f.s.Roles[j].Role })
 	for id := range f.joined {
 		f.s.Joined = append(f.s.Joined, id)
 	}
-	slices.Sort(f.s.Joined)
+	sort.Slice(f.s.Joined, func(i, j int) bool { return f.s.Joined[i] < f.s.Joined[j] })
 	return f.s
-}
-
-func compareStrings(a, b string) int {
-	switch {
-	case a < b:
-		return -1
-	case a > b:
-		return 1
-	}
-	return 0
 }
 
 // mayDecide reports whether a device may decide: it is in charge, or nobody is.

@@ -1,8 +1,8 @@
 package incident
 
 import (
-	"cmp"
 	"slices"
+	"sort"
 
 	"wakeback/drift/nav"
 )
@@ -113,7 +113,7 @@ func (f *folder) finishPersons() {
 		}
 		f.s.Persons = append(f.s.Persons, *p)
 	}
-	slices.SortFunc(f.s.Persons, func(a, b PersonState) int { return cmp.Compare(a.No, b.No) })
+	sort.Slice(f.s.Persons, func(i, j int) bool { return f.s.Persons[i].No < f.s.Persons[j].No })
 }
 
 // working is the mark chosen, or the first that was not dismissed.

@@ -3,6 +3,7 @@ package incident
 import (
 	"cmp"
 	"slices"
+	"sort"
 	"time"
 )
 
@@ -88,7 +89,7 @@ func (l *Log) Events() []Event {
 
 func (l *Log) inOrder() []*entry {
 	if !l.ordered {
-		slices.SortFunc(l.sorted, compareEntries)
+		sort.Slice(l.sorted, func(i, j int) bool { return compareEntries(l.sorted[i], l.sorted[j]) < 0 })
 		l.ordered = true
 	}
 	return l.sorted
