@@ -188,30 +188,48 @@ func (s *scanner) word() {
 	}
 	text := s.src[s.at:end]
 	s.at = end
-	switch strings.ToLower(text) {
-	case "n", "north":
-		s.emit(tokLetter, "N")
-	case "s", "south":
-		s.emit(tokLetter, "S")
-	case "e", "east":
-		s.emit(tokLetter, "E")
-	case "w", "west":
-		s.emit(tokLetter, "W")
-	case "lat", "latitude":
-		s.label("lat")
-	case "lon", "long", "lng", "longitude":
-		s.label("lon")
-	case "deg", "degree", "degrees":
-		s.mark(tokDegree)
-	case "min", "minute", "minutes":
-		s.mark(tokMinute)
-	case "sec", "second", "seconds":
-		s.mark(tokSecond)
-	case "o", "ost", "oeste", "ouest", "ovest", "oost", "oest":
-		s.fail(strconv.Quote(text) + " means east in one language and west in another: write E or W")
-	default:
-		s.fail(strconv.Quote(clip(text, 20)) + " is not one of the letters N, S, E, W")
+	lower := strings.ToLower(text)
+	for _, w := range words {
+		if !holdsWord(w.spelt, lower) {
+			continue
+		}
+		switch w.kind {
+		case tokLetter:
+			s.emit(tokLetter, w.text)
+		case tokLabel:
+			s.label(w.text)
+		default:
+			s.mark(w.kind)
+		}
+		return
 	}
+	if holdsWord("o ost oeste ouest ovest oost oest", lower) {
+		s.fail(strconv.Quote(text) + " means east in one language and west in another: write E or W")
+		return
+	}
+	s.fail(strconv.Quote(clip(text, 20)) + " is not one of the letters N, S, E, W")
+}
+
+// words are the words of a position, in lower case, spaces between them.
+var words = [...]struct {
+	spelt string
+	kind  tokenKind
+	text  string
+}{
+	{"n north", tokLetter, "N"},
+	{"s south", tokLetter, "S"},
+	{"e east", tokLetter, "E"},
+	{"w west", tokLetter, "W"},
+	{"lat latitude", tokLabel, "lat"},
+	{"lon long lng longitude", tokLabel, "lon"},
+	{"deg degree degrees", tokDegree, ""},
+	{"min minute minutes", tokMinute, ""},
+	{"sec second seconds", tokSecond, ""},
+}
+
+// holdsWord reports whether a word, of letters only, is in a list.
+func holdsWord(list, word string) bool {
+	return strings.Contains(" "+list+" ", " "+word+" ")
 }
 
 // label adds "lat" or "lon" and takes the colon or equals sign behind it.

@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"reflect"
 	"strings"
 
 	"wakeback/drift/nav"
@@ -83,11 +84,10 @@ func (e Event) validateBody() error {
 
 // decode reads the body into its type; a body of an unknown kind gives nil.
 func (e Event) decode() (any, error) {
-	newBody, ok := bodyOf[e.Kind]
-	if !ok {
+	body := newBody(e.Kind)
+	if body == nil {
 		return nil, nil
 	}
-	body := newBody()
 	if err := json.Unmarshal(e.Body, body); err != nil {
 		return nil, &FieldError{Field: bodyField(err), Expected: "the form of a body of kind " + string(e.Kind), Err: err}
 	}
@@ -105,47 +105,62 @@ func bodyField(err error) string {
 	return "body"
 }
 
-// bodyOf makes an empty body for every kind that has one.
-var bodyOf = map[Kind]func() any{
-	KindMarked:        func() any { return new(Marked) },
-	KindMarkPlaced:    func() any { return new(MarkPlaced) },
-	KindMarkAdjusted:  func() any { return new(MarkAdjusted) },
-	KindMarkDismissed: func() any { return new(MarkDismissed) },
-	KindWorkingMark:   func() any { return new(WorkingMark) },
-	KindBeacon:        func() any { return new(Beacon) },
-	KindMissing:       func() any { return new(Missing) },
-	KindClue:          func() any { return new(Clue) },
-	KindSeen:          func() any { return new(Seen) },
-	KindLostSight:     func() any { return new(Seen) },
-	KindPerson:        func() any { return new(Person) },
-	KindWind:          func() any { return new(WindObserved) },
-	KindCurrent:       func() any { return new(CurrentObserved) },
-	KindWater:         func() any { return new(WaterObserved) },
-	KindInCharge:      func() any { return new(InCharge) },
-	KindRole:          func() any { return new(Role) },
-	KindHeadCount:     func() any { return new(HeadCount) },
-	KindAttached:      func() any { return new(OfPerson) },
-	KindAlongside:     func() any { return new(OfPerson) },
-	KindParted:        func() any { return new(OfPerson) },
-	KindAboard:        func() any { return new(Aboard) },
-	KindMissedPass:    func() any { return new(MissedPass) },
-	KindStoodDown:     func() any { return new(StoodDown) },
-	KindReopened:      func() any { return new(StoodDown) },
-	KindSuspended:     func() any { return new(Order) },
-	KindOrder:         func() any { return new(Order) },
-	KindCallMade:      func() any { return new(Call) },
-	KindCallAnswered:  func() any { return new(Call) },
-	KindBuoyDropped:   func() any { return new(Buoy) },
-	KindBuoySeen:      func() any { return new(Buoy) },
-	KindSearchLaid:    func() any { return new(SearchLaid) },
-	KindLegBegun:      func() any { return new(LegBegun) },
-	KindLegEnded:      func() any { return new(LegEnded) },
-	KindSearchPaused:  func() any { return new(SearchWord) },
-	KindSearchResumed: func() any { return new(SearchWord) },
-	KindSearchDropped: func() any { return new(SearchWord) },
-	KindNote:          func() any { return new(Note) },
-	KindUndone:        func() any { return new(Undone) },
-	KindJoined:        func() any { return new(Joined) },
+// newBody is an empty body of a kind, or nil for a kind that has none.
+func newBody(k Kind) any {
+	for _, b := range bodies {
+		if b.kind == k {
+			return reflect.New(reflect.TypeOf(b.body).Elem()).Interface()
+		}
+	}
+	return nil
+}
+
+// bodies are the kinds that have a body, with a pointer of its type. A table
+// that the linker lays out is smaller in the engine than a map of functions
+// that is made at its start.
+var bodies = [...]struct {
+	kind Kind
+	body any
+}{
+	{KindMarked, (*Marked)(nil)},
+	{KindMarkPlaced, (*MarkPlaced)(nil)},
+	{KindMarkAdjusted, (*MarkAdjusted)(nil)},
+	{KindMarkDismissed, (*MarkDismissed)(nil)},
+	{KindWorkingMark, (*WorkingMark)(nil)},
+	{KindBeacon, (*Beacon)(nil)},
+	{KindMissing, (*Missing)(nil)},
+	{KindClue, (*Clue)(nil)},
+	{KindSeen, (*Seen)(nil)},
+	{KindLostSight, (*Seen)(nil)},
+	{KindPerson, (*Person)(nil)},
+	{KindWind, (*WindObserved)(nil)},
+	{KindCurrent, (*CurrentObserved)(nil)},
+	{KindWater, (*WaterObserved)(nil)},
+	{KindInCharge, (*InCharge)(nil)},
+	{KindRole, (*Role)(nil)},
+	{KindHeadCount, (*HeadCount)(nil)},
+	{KindAttached, (*OfPerson)(nil)},
+	{KindAlongside, (*OfPerson)(nil)},
+	{KindParted, (*OfPerson)(nil)},
+	{KindAboard, (*Aboard)(nil)},
+	{KindMissedPass, (*MissedPass)(nil)},
+	{KindStoodDown, (*StoodDown)(nil)},
+	{KindReopened, (*StoodDown)(nil)},
+	{KindSuspended, (*Order)(nil)},
+	{KindOrder, (*Order)(nil)},
+	{KindCallMade, (*Call)(nil)},
+	{KindCallAnswered, (*Call)(nil)},
+	{KindBuoyDropped, (*Buoy)(nil)},
+	{KindBuoySeen, (*Buoy)(nil)},
+	{KindSearchLaid, (*SearchLaid)(nil)},
+	{KindLegBegun, (*LegBegun)(nil)},
+	{KindLegEnded, (*LegEnded)(nil)},
+	{KindSearchPaused, (*SearchWord)(nil)},
+	{KindSearchResumed, (*SearchWord)(nil)},
+	{KindSearchDropped, (*SearchWord)(nil)},
+	{KindNote, (*Note)(nil)},
+	{KindUndone, (*Undone)(nil)},
+	{KindJoined, (*Joined)(nil)},
 }
 
 // validUUID reports whether s is a UUID in lower case, of the version given
