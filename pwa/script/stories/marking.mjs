@@ -34,7 +34,10 @@ export const stories = {
     assert(shownMs < 2000, `the other phone showed it after ${shownMs} ms`);
     assert.equal(fake.events.length, 1);
     const at = Date.parse(fake.events[0].at);
-    assert(at >= before - 5 && at <= pressed + 50, `marked at ${at}, touched between ${before} and ${pressed}`);
+    // The mark stands on the vessel's clock, which the phone knows by a question
+    // and an answer: half of what these took, on a busy machine, is its error.
+    const clockMs = 100;
+    assert(at >= before - clockMs && at <= pressed + clockMs, `marked at ${at}, touched between ${before} and ${pressed}`);
     for (const v of brightest) assert(v.blue < 100 && v.least < 100, `a pixel of ${JSON.stringify(v)}`);
     s.measured = ` other phone after ${shownMs} ms`;
   },
