@@ -249,7 +249,9 @@ func TestOpeningIsQuick(t *testing.T) {
 		s, r := open(t, Options{Dir: dir})
 		took := time.Since(begin)
 		t.Logf("10,000 events, without %q: %s in %s", lose, r.Mode, took)
-		if took > 5*time.Second || len(all(t, s)) != 10_000 {
+		// One to two seconds; the race detector and a busy machine take several
+		// times that, so what is refused here is an opening that hangs.
+		if took > 30*time.Second || len(all(t, s)) != 10_000 {
 			t.Errorf("without %q: %d events in %s", lose, len(all(t, s)), took)
 		}
 		closeStore(t, s)
