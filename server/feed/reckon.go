@@ -119,10 +119,15 @@ func (r *reckoner) reckoned() nav.Opt[DeadReckoned] {
 	})
 }
 
+// runSigmaM is the standard error of a run of runM metres, from those of course
+// and speed.
+func runSigmaM(runM, sigmaCourse, sigmaSpeed float64) float64 {
+	return math.Hypot(runM*math.Sin(sigmaCourse*math.Pi/180), runM*sigmaSpeed)
+}
+
 func (r *reckoner) errorM() float64 {
-	cross := r.runM * math.Sin(sigmaCourseDeg*math.Pi/180)
-	along := r.runM * sigmaSpeed
-	e := to95 * math.Sqrt(cross*cross+along*along+r.driftM*r.driftM+sigmaFixM*sigmaFixM)
+	run := runSigmaM(r.runM, sigmaCourseDeg, sigmaSpeed)
+	e := to95 * math.Sqrt(run*run+r.driftM*r.driftM+sigmaFixM*sigmaFixM)
 	if r.basis == ByLast {
 		// Nothing tells whether she kept her course: she may be anywhere within
 		// the distance she could run, on any side of where she was.
