@@ -8,6 +8,8 @@ import (
 	"io"
 	"log/slog"
 	"math/rand/v2"
+	"strconv"
+	"strings"
 	"sync"
 	"time"
 
@@ -23,6 +25,14 @@ type Config struct {
 	// Variation turns a magnetic heading into a true one where no instrument
 	// sent the variation.
 	Variation VariationFunc
+	// Record is where all that is said is written; without a path nowhere.
+	Record RecordConfig
+	// MaxKn is the speed over which a position is a jump that the vessel cannot
+	// have made; 0 means 60.
+	MaxKn float64
+	// AllowSimulated takes positions that an instrument itself calls simulated
+	// or typed in, for training ashore.
+	AllowSimulated bool
 }
 
 // Feeds are all feeds of a vessel, running. It is safe for use by several
@@ -30,7 +40,8 @@ type Config struct {
 type Feeds struct {
 	cfg     Config
 	sources []*source
-	updates chan Update
+	updates *queue
+	record  *recorder // nil when nothing is recorded
 
 	mu      sync.Mutex // guards all below, and the counts of every source
 	state   *state
@@ -68,18 +79,23 @@ type SourceStatus struct {
 	Unknown   uint64      `json:"unknown"`
 	AISUnread uint64      `json:"ais_unread"` // sound sentences whose message is not read here
 	LastAt    time.Time   `json:"last_at,omitzero"`
-	Address   string      `json:"address,omitempty"` // where it listens, if it does
+	// LastError says, for a person, why the newest line that was refused was
+	// refused; LastBad is that line, cut and made printable.
+	LastError string `json:"last_error,omitempty"`
+	LastBad   string `json:"last_bad,omitempty"`
+	Address   string `json:"address,omitempty"` // where it listens, if it does
 }
 
 // silentAfter is when a feed that says nothing counts as silent. Our choice:
 // the slowest instrument that matters speaks every ten seconds.
 const silentAfter = 10 * time.Second
 
-// maxUpdates is how many updates wait for a reader that is behind; the oldest
-// fix gives way then, since the state holds the newest anyway.
-const maxUpdates = 256
+// subFeeds is how many feeds within a recording are told apart, and thereby the
+// step between the identities of two feeds.
+const subFeeds = 16
 
-// New reads the addresses; an error wraps [ErrURL].
+// New reads the addresses, and opens the recording. An error about an address
+// wraps [ErrURL].
 func New(cfg Config) (*Feeds, error) {
 	if cfg.Now == nil {
 		cfg.Now = time.Now
@@ -87,34 +103,59 @@ func New(cfg Config) (*Feeds, error) {
 	if cfg.Log == nil {
 		cfg.Log = slog.New(slog.DiscardHandler)
 	}
-	f := &Feeds{cfg: cfg, state: newState(), traffic: newTraffic(), updates: make(chan Update, maxUpdates)}
-	f.state.variation = cfg.Variation
+	f := &Feeds{cfg: cfg, state: newState(), traffic: newTraffic(), updates: newQueue()}
+	f.state.variation, f.state.allowSimulated = cfg.Variation, cfg.AllowSimulated
+	if cfg.MaxKn < 0 {
+		return nil, fmt.Errorf("feeds: greatest speed is %g kn, expected 0 or more", cfg.MaxKn)
+	}
+	if cfg.MaxKn > 0 {
+		f.state.maxKn = cfg.MaxKn
+	}
 	for i, raw := range cfg.URLs {
 		spec, err := ParseURL(raw)
 		if err != nil {
 			return nil, err
 		}
 		f.sources = append(f.sources, &source{
-			id: sourceID(i), spec: spec, dec: nmea.Decoder{Rule: spec.Checksum},
+			id: sourceID(i * subFeeds), spec: spec, dec: nmea.Decoder{Rule: spec.Checksum},
 			status: SourceStatus{URL: raw, State: Connecting},
 		})
 	}
-	f.state.name = func(id sourceID) string {
-		if int(id) < len(f.sources) {
-			return f.sources[id].spec.URL
-		}
-		return ""
-	}
+	f.state.name = f.nameOf
 	f.state.replayed = func(id sourceID) bool {
-		return int(id) < len(f.sources) && f.sources[id].spec.Kind == File
+		return int(id)/subFeeds < len(f.sources) && f.sources[int(id)/subFeeds].spec.Kind == File
 	}
-	return f, nil
+	var err error
+	f.record, err = newRecorder(cfg.Record)
+	return f, err
+}
+
+// nameOf is the address of a feed, with the number of the feed within a
+// recording.
+func (f *Feeds) nameOf(id sourceID) string {
+	if int(id)/subFeeds >= len(f.sources) {
+		return "injected"
+	}
+	name := f.sources[int(id)/subFeeds].spec.URL
+	if sub := int(id) % subFeeds; sub > 0 {
+		name += "#" + strconv.Itoa(sub)
+	}
+	return name
 }
 
 // Run listens until ctx ends. A feed that breaks off is tried again, after a
-// wait that grows to some seconds.
+// wait that grows to some seconds. When Run returns every goroutine that it
+// started has ended and the channel of updates is closed. It may be called once.
 func (f *Feeds) Run(ctx context.Context) error {
 	var parts sync.WaitGroup
+	parts.Go(func() { f.updates.pump(ctx) })
+	if f.record != nil {
+		parts.Go(func() {
+			if err := f.record.run(ctx); err != nil {
+				f.cfg.Log.Error("recording", "error", err)
+			}
+		})
+	}
 	for _, s := range f.sources {
 		parts.Go(func() { f.listen(ctx, s) })
 	}
@@ -171,9 +212,13 @@ func (f *Feeds) once(ctx context.Context, s *source) error {
 	defer in.Close()
 	f.note(s, Live, "")
 	if s.spec.Kind == File {
-		return f.replay(ctx, s, in)
+		p := player{pace: s.spec.Pace, now: f.cfg.Now, say: func(h heard) { f.take(s, h) }}
+		return p.all(ctx, in, s.spec.Checksum)
 	}
-	err = readLines(in, func(line string) { f.take(s, line, f.cfg.Now()) })
+	err = readLines(in, func(line string) {
+		now := f.cfg.Now()
+		f.take(s, heard{text: line, at: now, line: now})
+	})
 	if err == nil {
 		err = io.EOF
 	}
@@ -181,12 +226,14 @@ func (f *Feeds) once(ctx context.Context, s *source) error {
 }
 
 // readLines reads lines of up to [nmea.MaxLine] bytes; of a longer one it
-// hands on the beginning, which counts as malformed, and skips the rest.
+// hands on the beginning, which counts as malformed, and skips the rest. What
+// stands at the end without a line end is half a line and is dropped: a talker
+// without checksums would otherwise have half a number believed.
 func readLines(r io.Reader, line func(string)) error {
 	br := bufio.NewReaderSize(r, nmea.MaxLine+1)
 	for {
 		text, err := br.ReadSlice('\n')
-		if len(text) > 0 {
+		if err == nil || errors.Is(err, bufio.ErrBufferFull) {
 			line(string(text))
 		}
 		for errors.Is(err, bufio.ErrBufferFull) {
@@ -207,34 +254,35 @@ func (f *Feeds) note(s *source, st SourceState, reason string) {
 	s.status.State, s.status.Reason = st, reason
 }
 
-// take counts a line and takes in what it says.
-func (f *Feeds) take(s *source, line string, lineAt time.Time) {
+// take counts a line, records it and takes in what it says.
+func (f *Feeds) take(s *source, h heard) {
+	text := strings.TrimRight(h.text, "\r\n")
 	f.mu.Lock()
-	now := f.cfg.Now()
-	sentence, body, err := s.dec.Parse(line)
-	s.count(err, now)
-	var fix nav.Opt[nav.Fix]
-	var beacon nav.Opt[Beacon]
-	if err == nil {
-		m := said{src: s.id, at: now, line: lineAt, sentence: sentence.Talker + sentence.Formatter}
-		fix = f.state.apply(m, body)
-		beacon = mobBeacon(body, now)
-		if v, ok := body.(*nmea.VDM); ok {
-			if beacon, err = f.traffic.hear(s.id, s.spec.URL, v, now); err != nil {
-				s.status.AISUnread++
-			}
+	defer f.mu.Unlock()
+	if s.spec.Kind != File { // a recording is not recorded again
+		f.record.write(h.at, int(s.id)/subFeeds+1, text)
+	}
+	sentence, body, err := s.dec.Parse(text)
+	s.count(text, err, f.cfg.Now())
+	if err != nil {
+		return
+	}
+	m := said{src: s.id + sourceID(h.sub), at: h.at, line: h.line, sentence: sentence.Talker + sentence.Formatter}
+	if fix := f.state.apply(m, body); fix.IsSet() {
+		f.updates.put(Update{Kind: UpdateFix, At: h.at, Source: f.nameOf(m.src), Fix: fix})
+	}
+	beacon := mobBeacon(body, h.at)
+	if v, ok := body.(*nmea.VDM); ok {
+		if beacon, err = f.traffic.hear(m.src, f.nameOf(m.src), v, h.at); err != nil {
+			s.status.AISUnread++
 		}
 	}
-	f.mu.Unlock()
-	if fix.IsSet() {
-		f.tell(Update{Kind: UpdateFix, At: now, Source: s.spec.URL, Fix: fix})
-	}
 	if beacon.IsSet() {
-		f.tell(Update{Kind: UpdateBeacon, At: now, Source: s.spec.URL, Beacon: beacon})
+		f.updates.put(Update{Kind: UpdateBeacon, At: h.at, Source: f.nameOf(m.src), Beacon: beacon})
 	}
 }
 
-func (s *source) count(err error, now time.Time) {
+func (s *source) count(line string, err error, now time.Time) {
 	switch {
 	case err == nil:
 		s.status.Good++
@@ -242,35 +290,39 @@ func (s *source) count(err error, now time.Time) {
 		s.status.Unknown++
 	case errors.Is(err, nmea.ErrChecksum), errors.Is(err, nmea.ErrNoChecksum):
 		s.status.Checksum++
+		s.status.LastError, s.status.LastBad = err.Error(), printable(line)
 		return
 	default:
 		s.status.Malformed++
+		s.status.LastError, s.status.LastBad = err.Error(), printable(line)
 		return
 	}
 	s.status.LastAt = now
 }
 
-// tell hands an update on. It never waits: for a reader that is behind the
-// oldest update is dropped, unless it is a beacon's.
-func (f *Feeds) tell(u Update) {
-	for {
-		select {
-		case f.updates <- u:
-			return
-		default:
-		}
-		select {
-		case old := <-f.updates:
-			if old.Kind == UpdateBeacon && u.Kind != UpdateBeacon {
-				u = old
-			}
-		default:
+// printable makes a line fit for a screen or a log.
+func printable(line string) string {
+	b := []byte(line[:min(len(line), 100)])
+	for i, c := range b {
+		if c < ' ' || c > '~' {
+			b[i] = '?'
 		}
 	}
+	return string(b)
 }
 
-// Updates tells what is new, as it happens.
-func (f *Feeds) Updates() <-chan Update { return f.updates }
+// Updates tells what is new, as it happens. A reader that is behind gets the
+// newest fixes and the newest report of each beacon. The channel is closed when
+// Run returns.
+func (f *Feeds) Updates() <-chan Update { return f.updates.out }
+
+// Recording is how the recording is; absent when nothing is recorded.
+func (f *Feeds) Recording() nav.Opt[RecordStatus] {
+	if f.record == nil {
+		return nav.None[RecordStatus]()
+	}
+	return nav.Some(f.record.state())
+}
 
 // Vessel is all that the instruments say at a moment.
 func (f *Feeds) Vessel(now time.Time) Vessel {

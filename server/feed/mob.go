@@ -14,7 +14,7 @@ func mobBeacon(body nmea.Body, now time.Time) nav.Opt[Beacon] {
 	if !ok {
 		return nav.None[Beacon]()
 	}
-	b := Beacon{MMSI: m.MMSI.Or(0), Position: m.Position, SogKn: m.SogKn, CogTrue: m.CogTrue, At: now}
+	b := Beacon{MMSI: m.MMSI.Or(0), Emitter: m.Emitter, Position: m.Position, SogKn: m.SogKn, CogTrue: m.CogTrue, At: now}
 	switch m.Status {
 	case nmea.MOBActive, nmea.MOBManual:
 		return nav.Some(b)

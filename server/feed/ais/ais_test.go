@@ -10,6 +10,7 @@ import (
 	"testing"
 	"time"
 
+	"wakeback/drift/nav"
 	"wakeback/server/feed/nmea"
 )
 
@@ -163,6 +164,33 @@ func TestTexts(t *testing.T) {
 		}
 		if m.Text != tt.text || m.Name != tt.name || AlarmOf(m) != tt.alarm {
 			t.Errorf("%s: text %q, name %q, alarm %d; want %q, %q, %d", tt.lines[0], m.Text, m.Name, AlarmOf(m), tt.text, tt.name, tt.alarm)
+		}
+	}
+}
+
+// What a report of a device means by its status: only 15 is a test.
+func TestAlarmOf(t *testing.T) {
+	const device, ship = 972123456, 371798000
+	tests := []struct {
+		name string
+		m    Message
+		want Alarm
+	}{
+		{"status 14", Message{Type: 1, MMSI: device, Status: nav.Some(14)}, Active},
+		{"status 15", Message{Type: 1, MMSI: device, Status: nav.Some(15)}, Test},
+		{"status 0, sent by a device that was set up wrongly", Message{Type: 1, MMSI: device, Status: nav.Some(0)}, Active},
+		{"class B report, which has no status", Message{Type: 18, MMSI: device}, Active},
+		{"name", Message{Type: 24, MMSI: device, Name: "MOB"}, NoAlarm},
+		{"text that says neither", Message{Type: 14, MMSI: device, Text: "HELLO"}, NoAlarm},
+		{"text that says both", Message{Type: 14, MMSI: device, Text: "MOB ACTIVE TEST"}, Test},
+		{"a ship with status 14", Message{Type: 1, MMSI: ship, Status: nav.Some(14)}, NoAlarm},
+		{"a ship that says MOB ACTIVE", Message{Type: 14, MMSI: ship, Text: "MOB ACTIVE"}, NoAlarm},
+		{"SART", Message{Type: 1, MMSI: 970210000, Status: nav.Some(14)}, Active},
+		{"EPIRB under test", Message{Type: 1, MMSI: 974210000, Status: nav.Some(15)}, Test},
+	}
+	for _, tt := range tests {
+		if got := AlarmOf(tt.m); got != tt.want {
+			t.Errorf("%s: %d, want %d", tt.name, got, tt.want)
 		}
 	}
 }

@@ -155,24 +155,38 @@ const (
 	Test
 )
 
-// AlarmOf reads the meaning of a message: status 14 is active, 15 a test, of
-// position reports; of text messages the words ACTIVE and TEST (ITU-R M.1371,
-// table of navigational statuses and texts of message 14).
+// AlarmOf reads the meaning of a message: in position reports status 14 is
+// active and 15 a test, in text messages the words ACTIVE and TEST say it
+// (ITU-R M.1371, table of navigational statuses and texts of message 14).
+//
+// A position report of such a device with any other status, or of a kind that
+// carries none, is active too: only what says that it is a test is one. Our
+// choice, because a device on the air that calls itself neither is more likely
+// worn by someone in the water than on a bench, and a false alarm costs less.
 func AlarmOf(m Message) Alarm {
 	if !ClassOf(m.MMSI).Beacon() {
 		return NoAlarm
 	}
-	switch {
-	case m.Type == 14 && hasWord(m.Text, "TEST"):
-		return Test
-	case m.Type == 14 && hasWord(m.Text, "ACTIVE"):
-		return Active
-	case m.Type > 3:
-		return NoAlarm
-	case m.Status.Or(-1) == StatusActiveSART:
+	switch m.Type {
+	case 14:
+		return alarmOfText(m.Text)
+	case 1, 2, 3, 18:
+		if m.Status.Or(StatusActiveSART) == StatusUndefined {
+			return Test
+		}
 		return Active
 	}
-	return Test
+	return NoAlarm
+}
+
+func alarmOfText(text string) Alarm {
+	switch {
+	case hasWord(text, "TEST"):
+		return Test
+	case hasWord(text, "ACTIVE"):
+		return Active
+	}
+	return NoAlarm
 }
 
 func hasWord(text, word string) bool {
